@@ -1,0 +1,198 @@
+#!/usr/bin/env python3
+"""Compares two files of the shape of results.json, number by number.
+
+    compare_results.py EXPECTED.json OTHER.json [--tolerance 1e-9] [--brief]
+
+Every number of EXPECTED must be in OTHER: theories are matched by name, equations by outcome, terms by label,
+constructs and indicators by name, pairs by their two names in either order. A null in EXPECTED is not compared.
+Prints, per quantity, how many numbers were compared, the largest disagreement and where it is.
+Exit status 1 above the tolerance or where a number is absent.
+
+Disagreement is |x - y| / max(|x|, |y|, floor). The floors keep a number that is 0 up to rounding from counting:
+  loss differences and interval limits     a thousandth of the larger loss of the pair
+  intercepts and their t                   1
+  other coefficients                       a thousandth of the largest of the equation
+  t, f, q2, R2, f2, weights, loadings      0.001
+  AIC, AICc, BIC, HQ, GM                   1
+  p-values and BIC weights                 1e-12
+Everything else is relative. t and p of a pair whose standard error is below 1e-10 of the losses (the same theory up
+to rounding) are not compared. Ranks must be equal unless the losses agree to 1e-9.
+"""
+import argparse
+import json
+import sys
+
+ABSENT = object()
+RATIOS = {"t", "f", "q2", "r2", "adjusted_r2", "f2", "weight", "loading", "relative"}
+CRITERIA = {"aic", "aicc", "bic", "hq", "gm"}
+PROBABILITIES = {"p", "p_holm", "f_p", "bic_weight"}
+
+
+class Comparison:
+    def __init__(self, tolerance):
+        self.tolerance = tolerance
+        self.worst = {}  # quantity -> [count, disagreement, where, x, y]
+        self.absent = []
+
+    def number(self, quantity, where, x, y, floor=None):
+        if x is None or x is ABSENT or isinstance(x, str):
+            return
+        if not isinstance(y, (int, float)) or isinstance(y, bool):
+            self.absent.append(f"{where} {quantity}: expected {x!r}, the other file has "
+                               f"{'nothing' if y is ABSENT else repr(y)}")
+            return
+        if floor is None:
+            last = quantity.split(".")[-1]
+            floor = 1e-3 if last in RATIOS else 1.0 if last in CRITERIA else 1e-12 if last in PROBABILITIES else 0.0
+        size = max(abs(x), abs(y), floor)
+        disagreement = abs(x - y) / size if size > 0 else 0.0
+        if disagreement != disagreement:
+            disagreement = float("inf")
+        entry = self.worst.setdefault(quantity, [0, -1.0, where, x, y])
+        entry[0] += 1
+        if disagreement > entry[1]:
+            entry[1:] = [disagreement, where, x, y]
+
+    def mapping(self, prefix, where, x, y, floors=None):
+        """All numbers of a flat object."""
+        for key, value in x.items():
+            if isinstance(value, (dict, str)):
+                continue
+            other = y.get(key, ABSENT) if isinstance(y, dict) else ABSENT
+            if isinstance(value, list):
+                if all(isinstance(v, (int, float)) for v in value):
+                    for i, v in enumerate(value):
+                        got = other[i] if isinstance(other, list) and i < len(other) else ABSENT
+                        self.number(f"{prefix}.{key}", f"{where} [{i}]", v, got)
+                continue
+            self.number(f"{prefix}.{key}", where, value, other, (floors or {}).get(key))
+
+    def matched(self, what, key, where, xs, ys):
+        """Pairs of entries with the same name; an entry that the other file lacks is reported."""
+        known = {y[key]: y for y in ys or []}
+        for x in xs or []:
+            if x[key] in known:
+                yield x, known[x[key]]
+            else:
+                self.absent.append(f"{where}: the other file has no {what} \"{x[key]}\" (it has: "
+                                   f"{', '.join(map(str, known)) or 'none'})")
+
+
+def compare_held_out(c, where, x, y):
+    c.mapping("heldout", where, x, y)
+    for a, b in c.matched("indicator", "name", where, x.get("indicators"), y.get("indicators")):
+        c.mapping("heldout.indicators", f"{where}, {a['name']}", a, b)
+
+
+def compare_equations(c, where, xs, ys):
+    for x, y in c.matched("equation for", "outcome", where, xs, ys):
+        at = f"{where}, equation for {x['outcome']}"
+        c.number("equations.r2", at, x.get("r2"), y.get("r2", ABSENT))
+        largest = max((abs(t["coefficient"]) for t in x["terms"]), default=0.0)
+        for a, b in c.matched("term", "term", at, x["terms"], y.get("terms")):
+            intercept = a["term"] == "1"
+            floors = {"coefficient": 1.0 if intercept else 1e-3 * largest, "t": 1.0 if intercept else 1e-3}
+            c.mapping("equations.terms", f"{at}, term {a['term']}", a, b, floors)
+
+
+def compare_theories(c, xs, ys):
+    losses = [x["heldout"].get("loss") for x in xs or [] if "heldout" in x]
+    for x, y in c.matched("theory", "name", "theories", xs, ys):
+        where = f"theory {x['name']}"
+        held_out = x.get("heldout", {})
+        compare_held_out(c, where, held_out, y.get("heldout", {}))
+        loss = held_out.get("loss")
+        tied = loss is not None and sum(abs(loss - v) <= 1e-9 * loss for v in losses if v is not None) > 1
+        if not tied:
+            c.number("rank", where, x.get("rank"), y.get("rank", ABSENT))
+        for part in ("fitted", "criteria"):
+            c.mapping(part, where, x.get(part, {}), y.get(part, {}))
+        compare_equations(c, where, x.get("equations"), y.get("equations"))
+        for a, b in c.matched("weights of", "construct", where, x.get("weights"), y.get("weights")):
+            for i, j in c.matched("indicator", "name", f"{where}, {a['construct']}", a["indicators"], b["indicators"]):
+                c.mapping("weights", f"{where}, {a['construct']}, {i['name']}", i, j)
+
+
+def turned(pair, losses):
+    """The pair seen from its other side."""
+    out = {"a": pair["b"], "b": pair["a"], "difference": -pair["difference"]}
+    if losses.get(pair["a"]):
+        out["relative"] = -pair["difference"] / losses[pair["a"]]
+    for test in ("rows", "corrected"):
+        old = pair.get(test) or {}
+        new = dict(old)
+        if isinstance(old.get("t"), (int, float)):
+            new["t"] = -old["t"]
+        for mine, theirs in (("low", "high"), ("high", "low")):
+            if isinstance(old.get(theirs), (int, float)):
+                new[mine] = -old[theirs]
+        out[test] = new
+    return out
+
+
+def compare_pairs(c, xs, ys, losses):
+    known = {(y["a"], y["b"]): y for y in ys or []}
+    for x in xs or []:
+        a, b = x["a"], x["b"]
+        where = f"{a} against {b}"
+        y = known.get((a, b)) or (turned(known[b, a], losses) if (b, a) in known else None)
+        if y is None:
+            c.absent.append(f"{where}: the other file has no such pair")
+            continue
+        size = max(losses.get(a) or 0.0, losses.get(b) or 0.0)
+        floor = 1e-3 * size
+        c.number("pairs.difference", where, x.get("difference"), y.get("difference", ABSENT), floor)
+        c.number("pairs.relative", where, x.get("relative"), y.get("relative", ABSENT))
+        for test in ("rows", "corrected"):
+            mine = dict(x.get(test) or {})
+            if mine.get("se") is not None and mine["se"] < 1e-10 * size:
+                for key in ("t", "p", "p_holm"):
+                    mine.pop(key, None)
+            c.mapping(f"pairs.{test}", where, mine, y.get(test), {"low": floor, "high": floor, "se": floor})
+
+
+def compare(x, y, tolerance):
+    c = Comparison(tolerance)
+    c.mapping("data", "data", {k: v for k, v in x.get("data", {}).items() if k.startswith("rows_")}, y.get("data", {}))
+    compare_theories(c, x.get("theories"), y.get("theories"))
+    for a, b in c.matched("benchmark", "name", "benchmarks", x.get("benchmarks"), y.get("benchmarks")):
+        compare_held_out(c, a["name"], a.get("heldout", {}), b.get("heldout", {}))
+    losses = {}
+    for file in (y, x):
+        for entry in file.get("theories", []) + file.get("benchmarks", []):
+            if entry.get("heldout", {}).get("loss") is not None:
+                losses[entry["name"]] = entry["heldout"]["loss"]
+    compare_pairs(c, x.get("pairs"), y.get("pairs"), losses)
+    return c
+
+
+def main():
+    parser = argparse.ArgumentParser(description=__doc__, formatter_class=argparse.RawDescriptionHelpFormatter)
+    parser.add_argument("expected")
+    parser.add_argument("other")
+    parser.add_argument("--tolerance", type=float, default=1e-9)
+    parser.add_argument("--brief", action="store_true", help="one line, and only what disagrees")
+    args = parser.parse_args()
+    with open(args.expected, encoding="utf-8") as f, open(args.other, encoding="utf-8") as g:
+        c = compare(json.load(f), json.load(g), args.tolerance)
+
+    if not c.worst:
+        print("nothing to compare")
+        return 1
+    bad = {q: e for q, e in c.worst.items() if e[1] > args.tolerance}
+    for quantity, (count, worst, where, x, y) in c.worst.items():
+        if not args.brief or quantity in bad:
+            mark = "  <-- above the tolerance" if quantity in bad else ""
+            print(f"{quantity:28} {count:6} numbers  {worst:9.2e}  {where}: {x!r} {y!r}{mark}")
+    for line in c.absent[:20]:
+        print(f"absent: {line}")
+    if len(c.absent) > 20:
+        print(f"absent: and {len(c.absent) - 20} more")
+    quantity, entry = max(c.worst.items(), key=lambda item: item[1][1])
+    print(f"{sum(e[0] for e in c.worst.values())} numbers compared, largest disagreement {entry[1]:.2e} "
+          f"({quantity}, {entry[2]}), {len(c.absent)} absent")
+    return 1 if bad or c.absent else 0
+
+
+if __name__ == "__main__":
+    sys.exit(main())
