@@ -1,7 +1,7 @@
 #!/usr/bin/env python3
 """Compares two files of the shape of results.json, number by number.
 
-    compare_results.py EXPECTED.json OTHER.json [--tolerance 1e-9] [--brief]
+    compare_results.py EXPECTED.json OTHER.json [--tolerance 1e-9] [--brief] [--losses EXPECTED.csv OTHER.csv]
 
 Every number of EXPECTED must be in OTHER: theories are matched by name, equations by outcome, terms by label,
 constructs and indicators by name, pairs by their two names in either order. A null in EXPECTED is not compared.
@@ -16,9 +16,11 @@ Disagreement is |x - y| / max(|x|, |y|, floor). The floors keep a number that is
   AIC, AICc, BIC, HQ, GM                   1
   p-values and BIC weights                 1e-12
 Everything else is relative. t and p of a pair whose standard error is below 1e-10 of the losses (the same theory up
-to rounding) are not compared. Ranks must be equal unless the losses agree to 1e-9.
+to rounding) are not compared. Ranks must be equal unless the losses agree to 1e-9. With --losses the losses of every
+row are compared too (columns by name), with a floor of a thousandth of the contestant's mean loss.
 """
 import argparse
+import csv
 import json
 import sys
 
@@ -151,6 +153,20 @@ def compare_pairs(c, xs, ys, losses):
             c.mapping(f"pairs.{test}", where, mine, y.get(test), {"low": floor, "high": floor, "se": floor})
 
 
+def read_losses(path):
+    with open(path, encoding="utf-8-sig", newline="") as f:
+        return {int(line.pop("row")): {name: float(v) for name, v in line.items()} for line in csv.DictReader(f)}
+
+
+def compare_losses(c, path_x, path_y):
+    xs, ys = read_losses(path_x), read_losses(path_y)
+    names = next(iter(xs.values()))
+    floor = {name: 1e-3 * sum(x[name] for x in xs.values()) / len(xs) for name in names}
+    for row, x in xs.items():
+        for name, value in x.items():
+            c.number("losses.csv", f"row {row}, {name}", value, ys.get(row, {}).get(name, ABSENT), floor[name])
+
+
 def compare(x, y, tolerance):
     c = Comparison(tolerance)
     c.mapping("data", "data", {k: v for k, v in x.get("data", {}).items() if k.startswith("rows_")}, y.get("data", {}))
@@ -172,9 +188,12 @@ def main():
     parser.add_argument("other")
     parser.add_argument("--tolerance", type=float, default=1e-9)
     parser.add_argument("--brief", action="store_true", help="one line, and only what disagrees")
+    parser.add_argument("--losses", nargs=2, metavar=("EXPECTED.csv", "OTHER.csv"))
     args = parser.parse_args()
     with open(args.expected, encoding="utf-8") as f, open(args.other, encoding="utf-8") as g:
         c = compare(json.load(f), json.load(g), args.tolerance)
+    if args.losses:
+        compare_losses(c, *args.losses)
 
     if not c.worst:
         print("nothing to compare")

@@ -11,6 +11,7 @@ Needs Python 3.9 or newer with numpy, PyYAML and scipy (tails and quantiles of t
 import argparse
 import csv
 import fnmatch
+import io
 import itertools
 import json
 import math
@@ -120,7 +121,7 @@ def read_cells(path, delimiter):
     if not delimiter:
         first = text.split("\n", 1)[0]
         delimiter = max(",;\t|", key=first.count)
-    rows = [r for r in csv.reader(text.splitlines(keepends=True), delimiter=delimiter) if r]
+    rows = [r for r in csv.reader(io.StringIO(text, newline=""), delimiter=delimiter) if r]
     header = [c.strip() for c in rows[0]]
     columns = {name: [r[j].strip() for r in rows[1:]] for j, name in enumerate(header)}
     return header, columns, delimiter
