@@ -77,8 +77,14 @@ compilers_at_once() {
   echo $((cores < memory ? cores : memory))
 }
 
-build() {  # build PRESET
+build() {  # build PRESET, standing in the clone
   if command -v ccache >/dev/null; then export CMAKE_CXX_COMPILER_LAUNCHER=ccache; fi
-  cmake --preset "$1" -S "$root"
+  local folder=build-$1 fresh=()
+  [ "$1" != release ] || folder=build
+  # A clone that was moved or copied with its build folder: CMake refuses the old cache, so start that folder over.
+  if [ -f "$folder/CMakeCache.txt" ] && ! grep -qxF "CMAKE_HOME_DIRECTORY:INTERNAL=$root" "$folder/CMakeCache.txt"; then
+    fresh=(--fresh)
+  fi
+  cmake --preset "$1" "${fresh[@]}"
   cmake --build --preset "$1" --parallel "$(compilers_at_once)"
 }
