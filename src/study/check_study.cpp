@@ -1,5 +1,6 @@
 // The rules across the sections of a study.
 #include "study/characters.hpp"
+#include "study/find_cycle.hpp"
 #include "study/sections.hpp"
 
 #include <algorithm>
@@ -13,22 +14,22 @@ namespace {
 
 using Lookup = std::unordered_map<std::string, const Construct*>;
 
-std::vector<std::string> names_in(const Lookup& lookup, const Study& study) {
-    std::vector<std::string> names;
-    for (const Construct& construct : study.constructs) names.push_back(construct.name.text);
-    for (const auto& [name, construct] : lookup)
-        if (std::find(names.begin(), names.end(), name) == names.end()) names.push_back(name);
-    return names;
-}
+// What every theory is checked against.
+struct Shared {
+    const Study& study;
+    Lookup constructs;
+    std::unordered_set<std::string> controls;
+    std::vector<std::string> names;  // of the constructs, in file order
+    FaultList& faults;
+};
 
 // Checks one theory against the study; each fault names the theory.
 class TheoryCheck {
 public:
-    TheoryCheck(const Study& study, Theory& theory, Lookup constructs, FaultList& faults)
-        : study_(study), theory_(theory), constructs_(std::move(constructs)), faults_(faults),
+    TheoryCheck(const Shared& shared, Theory& theory)
+        : shared_(shared), study_(shared.study), faults_(shared.faults), theory_(theory),
           called_("theory " + in_quotes(theory.name.text)) {
-        for (const Construct& own : theory.constructs) constructs_[own.name.text] = &own;
-        for (const Name& control : study.controls) controls_.insert(control.text);
+        for (const Construct& own : theory.constructs) own_.emplace(own.name.text, &own);
     }
 
     void run() {
@@ -45,12 +46,13 @@ private:
     bool is_target(const std::string& name) const { return !name.empty() && name == study_.target.text; }
 
     const Construct* known(const Name& name, std::string_view use) {
-        if (constructs_.empty()) return nullptr;  // a fault of the section constructs is noted already
-        const auto at = constructs_.find(name.text);
-        if (at != constructs_.end()) return at->second;
-        if (!faults_.full())
-            faults_.add(name.place, fmt::format("{} {} {}, which nothing defines", called_, use, in_quotes(name.text)),
-                        did_you_mean(name.text, names_in(constructs_, study_)));
+        if (const auto at = own_.find(name.text); at != own_.end()) return at->second;
+        if (const auto at = shared_.constructs.find(name.text); at != shared_.constructs.end()) return at->second;
+        if (shared_.constructs.empty() || faults_.full()) return nullptr;  // a broken section constructs is noted already
+        std::vector<std::string> names = shared_.names;
+        for (const Construct& own : theory_.constructs) names.push_back(own.name.text);
+        faults_.add(name.place, fmt::format("{} {} {}, which nothing defines", called_, use, in_quotes(name.text)),
+                    did_you_mean(name.text, names));
         return nullptr;
     }
 
@@ -65,7 +67,7 @@ private:
 
     // The controls stand in the target's equation already.
     void leave_controls_out(Equation& equation) {
-        const auto is_control = [&](const Term& term) { return term.kind == TermKind::score && controls_.contains(term.members[0].text); };
+        const auto is_control = [&](const Term& term) { return term.kind == TermKind::score && shared_.controls.contains(term.members[0].text); };
         for (const Term& term : equation.terms)
             if (is_control(term) && !term.from_crossed)
                 faults_.add(term.place, fmt::format("{} has the control {} as a term of the target's equation, where every control "
@@ -108,85 +110,65 @@ private:
 
     void check_cycles();
 
+    const Shared& shared_;
     const Study& study_;
-    Theory& theory_;
-    Lookup constructs_;
-    std::unordered_set<std::string> controls_;
     FaultList& faults_;
+    Theory& theory_;
+    Lookup own_;
     std::string called_;
 };
 
-// Strikes out every outcome whose antecedents are all struck out or have no equation; what is left holds the cycles.
 void TheoryCheck::check_cycles() {
+    const std::vector<Equation>& equations = theory_.equations;
     std::unordered_map<std::string, std::size_t> position;
-    for (std::size_t k = 0; k < theory_.equations.size(); ++k) position.emplace(theory_.equations[k].outcome.text, k);
-    const std::size_t n = theory_.equations.size();
-    std::vector<std::vector<std::size_t>> causes(n), effects(n);
-    for (std::size_t k = 0; k < n; ++k) {
+    for (std::size_t k = 0; k < equations.size(); ++k) position.emplace(equations[k].outcome.text, k);
+    std::vector<std::vector<std::size_t>> causes(equations.size());
+    for (std::size_t k = 0; k < equations.size(); ++k) {
         std::unordered_set<std::size_t> distinct;
         const auto add = [&](const std::string& name) {
             const auto at = position.find(name);
             if (at == position.end() || at->second == k || is_target(name)) return;  // the last two are noted already
             if (distinct.insert(at->second).second) causes[k].push_back(at->second);
         };
-        for (const Term& term : theory_.equations[k].terms)
+        for (const Term& term : equations[k].terms)
             for (const Name& member : term.members) add(member.text);
-        if (is_target(theory_.equations[k].outcome.text))
+        if (is_target(equations[k].outcome.text))
             for (const Name& control : study_.controls) add(control.text);
-        for (const std::size_t cause : causes[k]) effects[cause].push_back(k);
     }
-    std::vector<std::size_t> n_open(n), ready;
-    for (std::size_t k = 0; k < n; ++k)
-        if ((n_open[k] = causes[k].size()) == 0) ready.push_back(k);
-    while (!ready.empty()) {
-        const std::size_t done = ready.back();
-        ready.pop_back();
-        for (const std::size_t effect : effects[done])
-            if (--n_open[effect] == 0) ready.push_back(effect);
-    }
-    const auto left = std::find_if(n_open.begin(), n_open.end(), [](std::size_t open) { return open > 0; });
-    if (left == n_open.end()) return;
-    // From any outcome left, going from cause to cause within what is left must come round.
-    std::vector<std::size_t> path = {static_cast<std::size_t>(left - n_open.begin())};
-    std::vector<std::size_t> visited_at(n, n);
-    while (visited_at[path.back()] == n) {
-        visited_at[path.back()] = path.size() - 1;
-        const auto& from = causes[path.back()];
-        path.push_back(*std::find_if(from.begin(), from.end(), [&](std::size_t cause) { return n_open[cause] > 0; }));
-    }
-    const auto begin = path.begin() + static_cast<std::ptrdiff_t>(visited_at[path.back()]);
-    std::vector<std::size_t> cycle(begin, path.end() - 1);
-    std::reverse(cycle.begin(), cycle.end());
-    std::rotate(cycle.begin(), std::min_element(cycle.begin(), cycle.end()), cycle.end());
+    const std::vector<std::size_t> cycle = find_cycle(causes);
+    if (cycle.empty()) return;
     constexpr std::size_t kMostShown = 12;
     std::string text;
-    for (std::size_t k = 0; k < std::min(cycle.size(), kMostShown); ++k) text += theory_.equations[cycle[k]].outcome.text + " -> ";
+    for (std::size_t k = 0; k < std::min(cycle.size(), kMostShown); ++k) text += equations[cycle[k]].outcome.text + " -> ";
     if (cycle.size() > kMostShown) text += "... -> ";
-    const Name& first = theory_.equations[cycle.front()].outcome;
-    faults_.add(first.place, fmt::format("{} explains {} in a circle: {}{}; expected no cycles", called_, in_quotes(first.text), text, first.text));
+    const Name& first = equations[cycle.front()].outcome;
+    faults_.add(first.place, fmt::format("{} explains {} in a circle, {}{}; expected no cycles", called_,
+                                         in_quotes(first.text), text, first.text));
 }
 
-void check_target(const Study& study, const Lookup& constructs, FaultList& faults) {
-    if (study.target.text.empty() || constructs.empty()) return;
-    const auto at = constructs.find(study.target.text);
-    if (at == constructs.end()) {
-        faults.add(study.target.place, fmt::format("the target {} is no construct of the study; expected one of its constructs",
-                                                   in_quotes(study.target.text)),
-                   did_you_mean(study.target.text, names_in({}, study)));
+void check_target(const Shared& shared) {
+    const Name& target = shared.study.target;
+    if (target.text.empty() || shared.constructs.empty()) return;
+    const auto at = shared.constructs.find(target.text);
+    if (at == shared.constructs.end()) {
+        shared.faults.add(target.place, fmt::format("the target {} is no construct of the study; expected one of its constructs",
+                                                    in_quotes(target.text)),
+                          did_you_mean(target.text, shared.names));
     } else if (at->second->category) {
-        faults.add(study.target.place, fmt::format("the target {} is a category; expected a construct with indicators",
-                                                   in_quotes(study.target.text)));
+        shared.faults.add(target.place, fmt::format("the target {} is a category; expected a construct with indicators",
+                                                    in_quotes(target.text)));
     }
 }
 
-void check_controls(const Study& study, const Lookup& constructs, FaultList& faults) {
-    for (const Name& control : study.controls) {
-        if (control.text == study.target.text) {
-            faults.add(control.place, fmt::format("the control {} is the target; expected another construct", in_quotes(control.text)));
-        } else if (!constructs.empty() && !constructs.contains(control.text)) {
-            faults.add(control.place, fmt::format("the control {} is no construct of the study; expected one of its constructs",
-                                                  in_quotes(control.text)),
-                       did_you_mean(control.text, names_in({}, study)));
+void check_controls(const Shared& shared) {
+    for (const Name& control : shared.study.controls) {
+        if (control.text == shared.study.target.text) {
+            shared.faults.add(control.place, fmt::format("the control {} is the target; expected another construct",
+                                                         in_quotes(control.text)));
+        } else if (!shared.constructs.empty() && !shared.constructs.contains(control.text)) {
+            shared.faults.add(control.place, fmt::format("the control {} is no construct of the study; expected one of its "
+                                                         "constructs", in_quotes(control.text)),
+                              did_you_mean(control.text, shared.names));
         }
     }
 }
@@ -209,12 +191,16 @@ void check_theory_names(const Study& study, FaultList& faults) {
 }  // namespace
 
 void check_study(Study& study, FaultList& faults) {
-    Lookup constructs;
-    for (const Construct& construct : study.constructs) constructs.emplace(construct.name.text, &construct);
-    check_target(study, constructs, faults);
-    check_controls(study, constructs, faults);
+    Shared shared{study, {}, {}, {}, faults};
+    for (const Construct& construct : study.constructs) {
+        shared.constructs.emplace(construct.name.text, &construct);
+        shared.names.push_back(construct.name.text);
+    }
+    for (const Name& control : study.controls) shared.controls.insert(control.text);
+    check_target(shared);
+    check_controls(shared);
     check_theory_names(study, faults);
-    for (Theory& theory : study.theories) TheoryCheck(study, theory, constructs, faults).run();
+    for (Theory& theory : study.theories) TheoryCheck(shared, theory).run();
 }
 
 }  // namespace rivalfold
