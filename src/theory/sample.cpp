@@ -4,6 +4,22 @@
 #include <limits>
 
 namespace rivalfold {
+namespace {
+
+// Level counts are exact whole numbers, so a mean of 0 means absent.
+void mark_levels(const Sample& sample, Moments& moments) {
+    moments.in_force.assign(static_cast<std::size_t>(sample.n_columns), 1);
+    for (const LevelColumns& span : sample.categories) {
+        bool first_passed = false;
+        for (int column = span.first; column < span.first + span.n_levels; ++column) {
+            const bool present = moments.mean(column) > 0;
+            if (!present || !first_passed) moments.in_force[static_cast<std::size_t>(column)] = 0;
+            first_passed = first_passed || present;
+        }
+    }
+}
+
+}  // namespace
 
 Sample build_sample(const Survey& survey) {
     Sample sample;
@@ -59,7 +75,7 @@ void moments_by_downdating(const Sample& sample, const Gram& whole, const Gram& 
     const auto kept = [&](int a, int b) { return a >= b ? whole(a, b) - held_out(a, b) : whole(b, a) - held_out(b, a); };
     for (int h = 0; h < p; ++h) {
         const double observed = kept(mask(h), mask(h));
-        if (observed <= 0) {
+        if (observed <= 0) {  // only a gappy variable can lose all its cells
             out.constant = h;
             return;
         }
@@ -80,6 +96,7 @@ void moments_by_downdating(const Sample& sample, const Gram& whole, const Gram& 
         if (h < sample.n_variables && out.ss(h, h) < 1e-4 * whole(h, h)) suspect = true;
         out.sd(h) = out.ss(h, h) > 0 ? std::sqrt(out.ss(h, h) / (out.n - 1)) : 0;
     }
+    mark_levels(sample, out);
 }
 
 void moments_of_rows(const Sample& sample, const std::vector<Eigen::Index>& in, Moments& out) {
@@ -113,6 +130,7 @@ void moments_of_rows(const Sample& sample, const std::vector<Eigen::Index>& in, 
     }
     out.ss.noalias() = rows.transpose() * rows;
     for (int h = 0; h < p; ++h) out.sd(h) = std::sqrt(out.ss(h, h) / (out.n - 1));
+    mark_levels(sample, out);
 }
 
 }  // namespace rivalfold

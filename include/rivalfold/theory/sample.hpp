@@ -47,6 +47,7 @@ struct Moments {
     Eigen::VectorXd sd;    ///< n_columns, divisor n - 1, after filling
     Eigen::MatrixXd ss;    ///< n_columns x n_columns, symmetric: sums of squares and products about the means
     int constant = -1;     ///< a variable that does not vary (or has no observed cell), or -1
+    std::vector<char> in_force;  ///< n_columns; 0 for a category's first present level and for absent levels, else 1
 };
 
 /// Moments of the rows whose Gram is whole - held_out. `suspect` is set when a column keeps less than 1e-4 of its whole sum of

@@ -4,7 +4,6 @@ namespace rivalfold {
 
 bool update_mode_b(const Eigen::LLT<Eigen::MatrixXd>& correlations, const Eigen::Ref<const Eigen::VectorXd>& covariances,
                    Eigen::Ref<Eigen::VectorXd> out) {
-    if (correlations.info() != Eigen::Success || correlations.rcond() < 1e-14) return false;
     out = covariances;
     correlations.matrixL().solveInPlace(out);
     correlations.matrixU().solveInPlace(out);

@@ -16,7 +16,7 @@ void first_weights(Weights weights, const Eigen::Ref<const Eigen::MatrixXd>& cor
 /// Mode A: weights proportional to the covariance of indicator and proxy (Wold 1982; Lohmöller 1989, ch. 2).
 void update_mode_a(const Eigen::Ref<const Eigen::VectorXd>& covariances, Eigen::Ref<Eigen::VectorXd> out);
 
-/// Mode B: regression of the proxy on the indicators, R^-1 x covariances. False if R is singular to working precision.
+/// Mode B: regression of the proxy on the indicators, R^-1 x covariances, from the Cholesky factor of R. False on overflow.
 bool update_mode_b(const Eigen::LLT<Eigen::MatrixXd>& correlations, const Eigen::Ref<const Eigen::VectorXd>& covariances,
                    Eigen::Ref<Eigen::VectorXd> out);
 

@@ -1,0 +1,69 @@
+// What each contestant lost on each held-out row, and the sums that the tables need. Says nothing about which is better.
+#pragma once
+
+#include "rivalfold/folds/fold_plan.hpp"
+#include "rivalfold/theory/contestant.hpp"
+#include "rivalfold/theory/sample.hpp"
+
+#include <Eigen/Core>
+
+#include <memory>
+#include <string>
+#include <vector>
+
+namespace rivalfold {
+
+/// Held-out errors of one target indicator in its own units, over all rows and repeats.
+struct IndicatorErrors {
+    std::string name;
+    double rmse = 0;
+    double mae = 0;
+    double mape = 0;  ///< percent; NaN where an actual value is 0
+    double q2 = 0;    ///< 1 - SSE / SSE of the training mean
+};
+
+struct ContestantLosses {
+    std::string name;
+    bool is_theory = false;
+    bool failed = false;
+    std::string reason;              ///< why it failed and in which split
+    Eigen::VectorXd row_loss;        ///< n: L(t, i), mean over repeats
+    Eigen::VectorXd split_loss;      ///< R x K, repeat by repeat: mean loss of the split's held-out rows
+    double loss = 0;                 ///< mean of row_loss
+    double rmse = 0, mae = 0, q2 = 0;  ///< pooled over indicators in units u_j
+    std::vector<IndicatorErrors> indicators;
+    int rank_deficient_splits = 0;
+    int unseen_level_splits = 0;
+    int most_rounds = 0;             ///< of the weighting iteration, over all splits
+};
+
+/// A theory fitted to all rows used: the in-sample side of the run.
+struct WholeFit {
+    Fit fit;
+    bool failed = false;
+    std::string reason;
+};
+
+struct Trial {
+    int repeats = 0, folds = 0;
+    Eigen::VectorXd unit;                     ///< u_j: standard deviation of each target indicator over all rows used
+    std::vector<ContestantLosses> contestants;  ///< theories in file order, then training mean, then linear benchmark
+    std::vector<WholeFit> whole;              ///< per theory
+    std::vector<std::shared_ptr<const TheoryContestant>> theories;  ///< as fitted to all rows
+    std::vector<int> benchmark_predictors;    ///< sample columns of the linear benchmark
+    // Target scores and every distinct term of the theories' target equations, fitted to all rows (for the criteria).
+    struct FullModel {
+        std::vector<std::string> terms;    ///< labels
+        Eigen::VectorXd sse;               ///< per theory: its own target score (standard units) on all terms; NaN if it failed
+        int rank = 0;                      ///< with the intercept
+    } full_model;
+};
+
+/// The contest: every contestant on every split. `threads` changes nothing but the time. Throws FaultError when an indicator does
+/// not vary among the training rows of a split. A theory that cannot be fitted is kept, marked as failed, with the reason.
+Trial run_trial(const Study& study, const Survey& survey, const Sample& sample, const FoldPlan& plan, unsigned threads);
+
+/// Only the fits to all rows: what `check` needs for its advice.
+Trial fit_all_rows(const Study& study, const Survey& survey, const Sample& sample, unsigned threads);
+
+}  // namespace rivalfold
