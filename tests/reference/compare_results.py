@@ -15,8 +15,8 @@ Disagreement is |x - y| / max(|x|, |y|, floor). The floors keep a number that is
   t, f, q2, R2, f2, weights, loadings      0.001
   AIC, AICc, BIC, HQ, GM                   1
   p-values and BIC weights                 1e-12
-Everything else is relative. t and p of a pair whose standard error is below 1e-10 of the losses (the same theory up
-to rounding) are not compared. Ranks must be equal unless the losses agree to 1e-9. With --losses the losses of every
+Everything else is relative. The tests of a pair whose standard error is below 1e-10 of the losses (the same predictions
+up to rounding) are not compared. Ranks must be equal unless the losses agree to 1e-9. With --losses the losses of every
 row are compared too (columns by name), with a floor of a thousandth of the contestant's mean loss.
 """
 import argparse
@@ -146,11 +146,10 @@ def compare_pairs(c, xs, ys, losses):
         c.number("pairs.difference", where, x.get("difference"), y.get("difference", ABSENT), floor)
         c.number("pairs.relative", where, x.get("relative"), y.get("relative", ABSENT))
         for test in ("rows", "corrected"):
-            mine = dict(x.get(test) or {})
+            mine = x.get(test) or {}
             if mine.get("se") is not None and mine["se"] < 1e-10 * size:
-                for key in ("t", "p", "p_holm"):
-                    mine.pop(key, None)
-            c.mapping(f"pairs.{test}", where, mine, y.get(test), {"low": floor, "high": floor, "se": floor})
+                continue
+            c.mapping(f"pairs.{test}", where, mine, y.get(test), {"low": floor, "high": floor})
 
 
 def read_losses(path):
