@@ -20,11 +20,15 @@ trap 'stop "this step failed: $step. The lines above say why; once that is put r
 trap 'stop "interrupted. Run it again at any time: it goes on where it can."' INT TERM
 
 is_installed() {
-  dpkg-query -W -f='${db:Status-Status}\n' "$1" 2>/dev/null | grep -qx installed
+  local status
+  status=$(dpkg-query -W -f='${db:Status-Status} ' "$1" 2>/dev/null) || return 1
+  [ "${status%% *}" = installed ]
 }
 
 is_offered() {  # by the package sources that this machine knows
-  LC_ALL=C apt-cache policy "$1" 2>/dev/null | grep -q '^  Candidate: [^(]'
+  local policy
+  policy=$(LC_ALL=C apt-cache policy "$1" 2>/dev/null) || return 1
+  [[ $policy == *"  Candidate: "[!\(]* ]]
 }
 
 as_root() {
