@@ -51,8 +51,10 @@ install_missing() {
     return 0
   fi
   if [ "$(id -u)" -ne 0 ] && ! command -v sudo >/dev/null; then
-    stop "these packages are missing and installing them needs root or sudo: ${missing[*]%\?}." \
-         "As root: apt-get install --no-install-recommends ${missing[*]%\?}"
+    for package in "${missing[@]}"; do [ "$package" != "${package%\?}" ] || wanted+=("$package"); done
+    [ ${#wanted[@]} -gt 0 ] || { echo "Left out, for want of root or sudo: ${missing[*]%\?}"; return 0; }
+    stop "these packages are missing and installing them needs root or sudo: ${wanted[*]}." \
+         "As root: apt-get install --no-install-recommends ${wanted[*]}"
   fi
   as_root apt-get -o DPkg::Lock::Timeout=300 update ||
     echo "Not every package source could be read; trying with those that could."
