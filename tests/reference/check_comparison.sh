@@ -1,0 +1,36 @@
+#!/bin/sh
+# Can compare_results.py fail? Spoils one number at a time and expects a complaint; turns pairs round and expects none.
+set -u
+here=$(cd "$(dirname "$0")" && pwd)
+. "$here/find_python.sh"
+work=$(mktemp -d)
+trap 'rm -rf "$work"' EXIT
+"$PYTHON" "$here/plain_contest.py" "$here/studies/given_splits.yaml" --folds "$here/studies/splits.csv" -o "$work/a.json" || exit 1
+status=0
+
+expect() {  # STATUS WHAT CHANGE: applies one Python statement to the results r
+  "$PYTHON" -c "import json, sys
+r = json.load(open(sys.argv[1])); $3
+json.dump(r, open(sys.argv[2], 'w'))" "$work/a.json" "$work/b.json" || exit 1
+  "$PYTHON" "$here/compare_results.py" "$work/a.json" "$work/b.json" --brief >"$work/said"
+  if [ $? -eq "$1" ]; then echo "ok      $2"; else echo "WRONG   $2: $(cat "$work/said")"; status=1; fi
+}
+
+expect 0 "the same file agrees" "pass"
+expect 0 "a change below the tolerance passes" "r['theories'][0]['heldout']['loss'] *= 1 + 5e-10"
+expect 1 "a loss that is off by 2e-9 is seen" "r['theories'][0]['heldout']['loss'] *= 1 + 2e-9"
+expect 1 "a p-value that is off is seen" "r['pairs'][2]['corrected']['p'] *= 1.001"
+expect 1 "a number that is absent is seen" "del r['theories'][1]['criteria']['gm']"
+expect 1 "a null in place of a number is seen" "r['pairs'][0]['rows']['low'] = None"
+expect 1 "a theory that is absent is seen" "del r['theories'][1]"
+expect 1 "a term that is absent is seen" "del r['theories'][0]['equations'][0]['terms'][1]"
+expect 1 "a pair that is absent is seen" "del r['pairs'][3]"
+expect 1 "a rank that is wrong is seen" "r['theories'][0]['rank'] = 2"
+expect 0 "another order of theories and terms agrees" "r['theories'].reverse(); r['theories'][0]['equations'][0]['terms'].reverse()"
+expect 0 "a pair told from its other side agrees" "
+for p in r['pairs']:
+    loss = {e['name']: e['heldout']['loss'] for e in r['theories'] + r['benchmarks']}
+    p['a'], p['b'], p['difference'], p['relative'] = p['b'], p['a'], -p['difference'], -p['difference'] / loss[p['a']]
+    for t in (p['rows'], p['corrected']):
+        t['t'], t['low'], t['high'] = -t['t'], -t['high'], -t['low']"
+exit $status
