@@ -1,5 +1,5 @@
 #!/bin/sh
-# Runs every study of studies/ and of open_data/ with the program, then again in plain numpy on the splits that the program
+# Runs every study of studies/, outside/studies/, examples/ and open_data/ with the program, then again in plain numpy on the splits that the program
 # used, and compares every number: one line per study with the largest relative disagreement.
 #   live_check.sh PROGRAM [STUDY.yaml ...]
 # Status 1 where a study fails or disagrees by more than 1e-9; the work folder is then kept and named.
@@ -45,6 +45,7 @@ if [ $# -gt 0 ]; then
 else
   for study in "$here"/studies/*.yaml "$here"/outside/studies/*.yaml; do check "$study"; done
   for study in "$here"/outside/studies/*.yaml; do two_blocks "$study"; done
+  for study in "$here"/../../examples/*/*.yaml; do check "$(realpath "$study")"; done
   for folder in attitude swiss judges longley; do
     for study in "$here/open_data/$folder"/study*.yaml; do check "$study"; done
   done
