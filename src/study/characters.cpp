@@ -29,9 +29,9 @@ constexpr std::array kCombining = {CodeRange{0x0300, 0x036F}, CodeRange{0x0483, 
                                    CodeRange{0x064B, 0x065F}, CodeRange{0x1AB0, 0x1AFF}, CodeRange{0x1DC0, 0x1DFF},
                                    CodeRange{0x20D0, 0x20FF}, CodeRange{0xFE00, 0xFE0F}, CodeRange{0xFE20, 0xFE2F}};
 // Zero-width and bidirectional controls, line separators, byte order mark, noncharacters at the end of plane 0.
-constexpr std::array kMisleading = {CodeRange{0x0000, 0x001F}, CodeRange{0x007F, 0x009F}, CodeRange{0x061C, 0x061C},
-                                    CodeRange{0x200B, 0x200F}, CodeRange{0x2028, 0x202E}, CodeRange{0x2060, 0x206F},
-                                    CodeRange{0xFEFF, 0xFEFF}, CodeRange{0xFFF9, 0xFFFB}, CodeRange{0xFFFE, 0xFFFF},
+constexpr std::array kMisleading = {CodeRange{0x0000, 0x001F},  CodeRange{0x007F, 0x009F}, CodeRange{0x061C, 0x061C},
+                                    CodeRange{0x200B, 0x200F},  CodeRange{0x2028, 0x202E}, CodeRange{0x2060, 0x206F},
+                                    CodeRange{0xFEFF, 0xFEFF},  CodeRange{0xFFF9, 0xFFFB}, CodeRange{0xFFFE, 0xFFFF},
                                     CodeRange{0xE0000, 0xE007F}};
 
 std::size_t sequence_size(unsigned char lead) {
@@ -64,7 +64,8 @@ Character character_at(std::string_view text, std::size_t offset) {
 
 std::vector<Character> characters(std::string_view text) {
     std::vector<Character> all;
-    for (std::size_t offset = 0; offset < text.size(); offset += all.back().size) all.push_back(character_at(text, offset));
+    for (std::size_t offset = 0; offset < text.size(); offset += all.back().size)
+        all.push_back(character_at(text, offset));
     return all;
 }
 

@@ -23,7 +23,8 @@ Character character_at(std::string_view text, std::size_t offset);
 /// All characters of a text in order.
 std::vector<Character> characters(std::string_view text);
 
-/// True for what a terminal or a reader could be misled by: C0 and C1 controls, bidirectional overrides, line separators.
+/// True for what a terminal or a reader could be misled by: C0 and C1 controls, bidirectional overrides, line
+/// separators.
 bool is_control(char32_t code);
 
 /// The text with every control character and invalid byte written out, e.g. \n, \x1b, \u202e.

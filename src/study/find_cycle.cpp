@@ -38,7 +38,8 @@ std::vector<std::size_t> find_cycle(const std::vector<std::vector<std::size_t>>&
     while (visited_at[here] == n) {
         visited_at[here] = path.size();
         path.push_back(here);
-        here = *std::find_if(causes[here].begin(), causes[here].end(), [&](std::size_t cause) { return n_open[cause] > 0; });
+        here = *std::find_if(causes[here].begin(), causes[here].end(),
+                             [&](std::size_t cause) { return n_open[cause] > 0; });
     }
     std::vector<std::size_t> cycle(path.begin() + static_cast<std::ptrdiff_t>(visited_at[here]), path.end());
     std::reverse(cycle.begin(), cycle.end());

@@ -11,6 +11,8 @@
 namespace rivalfold {
 namespace {
 
+// Letters compared with letters between indicators and reversed ones; beyond, the data's own columns decide.
+constexpr std::size_t kMostWork = 50'000'000;
 constexpr std::size_t kMostIndicators = 2000;  // names written for one construct; a glob may stand for more columns
 
 std::optional<std::pair<double, double>> read_range(const Node& node, const std::string& label, FaultList& faults) {
@@ -25,32 +27,44 @@ std::optional<std::pair<double, double>> read_range(const Node& node, const std:
     const auto high = read_decimal(node.items[1], "the upper end of " + label, "a number", faults);
     if (!low || !high) return std::nullopt;
     if (*low < *high) return std::pair(*low, *high);
-    faults.add(node.place, fmt::format("{} must be {}, found {} before {}", label, kExpected, in_quotes(node.items[0].text),
-                                       in_quotes(node.items[1].text)));
+    faults.add(node.place, fmt::format("{} must be {}, found {} before {}", label, kExpected,
+                                       in_quotes(node.items[0].text), in_quotes(node.items[1].text)));
     return std::nullopt;
 }
 
 void check_category(const Keys& keys, const std::string& called) {
     if (keys.value("indicators") != nullptr)
-        keys.faults().add(keys.place("category"), fmt::format("{} has both \"indicators\" and \"category\"; expected one of them", called));
+        keys.faults().add(keys.place("category"),
+                          fmt::format("{} has both \"indicators\" and \"category\"; expected one of them", called));
     for (const std::string_view key : {"reversed", "range", "weights"})
         if (keys.value(key) != nullptr)
-            keys.faults().add(keys.place(key), fmt::format("{} is a category, for which \"{}\" means nothing; expected \"category\" alone",
-                                                           called, key));
+            keys.faults().add(
+                keys.place(key),
+                fmt::format("{} is a category, for which \"{}\" means nothing; expected \"category\" alone", called,
+                            key));
 }
 
 void check_reversed(const Construct& construct, const Keys& keys, const std::string& called) {
     if (!construct.reversed.empty() && keys.value("range") == nullptr)
-        keys.faults().add(keys.place("reversed"), fmt::format("{} has \"reversed\" but no \"range\"; expected the range, because a "
-                                                              "reversed value is low + high - value", called));
+        keys.faults().add(keys.place("reversed"),
+                          fmt::format("{} has \"reversed\" but no \"range\"; expected the range, because a "
+                                      "reversed value is low + high - value",
+                                      called));
     std::vector<std::string> known;
     for (const Name& indicator : construct.indicators) known.push_back(indicator.text);
     if (known.empty()) return;
+    std::size_t work = 0;
+    const auto fits = [&](const std::string& indicator, const std::string& reversed) {
+        work += indicator.size() * reversed.size();
+        return indicator == reversed || work > kMostWork || globs_meet(indicator, reversed);
+    };
     for (const Name& reversed : construct.reversed) {
-        const bool fits = std::any_of(known.begin(), known.end(), [&](const std::string& name) { return globs_meet(name, reversed.text); });
-        if (!fits)
-            keys.faults().add(reversed.place, fmt::format("{} reverses {}, which is none of its indicators", called, in_quotes(reversed.text)),
-                              did_you_mean(reversed.text, known));
+        if (std::none_of(known.begin(), known.end(),
+                         [&](const std::string& name) { return fits(name, reversed.text); }))
+            keys.faults().add(
+                reversed.place,
+                fmt::format("{} reverses {}, which is none of its indicators", called, in_quotes(reversed.text)),
+                did_you_mean(reversed.text, known));
     }
 }
 
@@ -64,27 +78,32 @@ Construct read_construct(const Node& key, const Node& node, const std::string& o
     if (const Node* indicators = keys.value("indicators")) {
         construct.indicators = read_names(*indicators, keys.label("indicators"), "column names", faults);
         if (construct.indicators.size() > kMostIndicators) {
-            faults.add(indicators->place, fmt::format("{} lists {} names; expected at most {}, with * for many columns",
-                                                      keys.label("indicators"), construct.indicators.size(), kMostIndicators));
+            faults.add(indicators->place,
+                       fmt::format("{} lists {} names; expected at most {}, with * for many columns",
+                                   keys.label("indicators"), construct.indicators.size(), kMostIndicators));
             construct.indicators.clear();
         }
     }
     if (const Node* reversed = keys.value("reversed"))
-        construct.reversed = read_names(*reversed, keys.label("reversed"), "column names", faults);
+        construct.reversed = read_names(*reversed, keys.label("reversed"), "column names", faults, 0);
     if (const Node* range = keys.value("range")) {
         construct.range = read_range(*range, keys.label("range"), faults);
         construct.range_place = range->place;
     }
     if (const Node* weights = keys.value("weights")) {
         read_word(*weights, keys.label("weights"),
-                  std::array{Weights::mode_a, Weights::mode_b, Weights::equal, Weights::principal}, construct.weights, faults);
+                  std::array{Weights::mode_a, Weights::mode_b, Weights::equal, Weights::principal}, construct.weights,
+                  faults);
         construct.weights_given = true;
     }
     if (const Node* category = keys.value("category")) {
         construct.category = read_name(*category, keys.label("category"), "a column name", faults);
         check_category(keys, called);
+        if (keys.value("indicators") != nullptr) construct.category.reset();
     } else if (keys.value("indicators") == nullptr) {
-        faults.add(key.place, fmt::format("{} has neither \"indicators\" nor \"category\"; expected one of them", called));
+        if (!keys.has_or_meant("indicators") && !keys.has_or_meant("category"))
+            faults.add(key.place,
+                       fmt::format("{} has neither \"indicators\" nor \"category\"; expected one of them", called));
     } else {
         check_reversed(construct, keys, called);
     }

@@ -35,13 +35,15 @@ void check_data_file(const Name& file, FaultList& faults) {
     constexpr std::array<std::string_view, 3> kSpreadsheets = {".xlsx", ".xls", ".ods"};
     const std::string extension = lower_extension(file.text);
     if (is_one_of(extension, kLater)) {
-        faults.add(file.place, fmt::format("\"file\" ending in {} is not supported yet, found {}; save it as CSV", extension,
-                                           in_quotes(file.text)));
+        faults.add(file.place, fmt::format("\"file\" ending in {} is not supported yet, found {}; save it as CSV",
+                                           extension, in_quotes(file.text)));
     } else if (is_one_of(extension, kSpreadsheets)) {
         faults.add(file.place, fmt::format("\"file\" of \"data\" must be delimited text, found the spreadsheet {}; "
-                                           "save its sheet as CSV", in_quotes(file.text)));
+                                           "save its sheet as CSV",
+                                           in_quotes(file.text)));
     } else if (!is_one_of(extension, kDelimited)) {
-        faults.add(file.place, fmt::format("\"file\" of \"data\" must end in .csv, .tsv or .txt, found {}", in_quotes(file.text)));
+        faults.add(file.place,
+                   fmt::format("\"file\" of \"data\" must end in .csv, .tsv or .txt, found {}", in_quotes(file.text)));
     }
 }
 
@@ -52,7 +54,8 @@ char read_delimiter(const Node& node, const std::string& label, FaultList& fault
         for (const auto& [written, delimiter] : kDelimiters)
             if (node.text == written) return delimiter;
     const bool bare_bar = node.kind == Node::Kind::text && node.quoted && node.text.empty();
-    note_type(node, label, "\",\", \";\", \"|\" or tab", faults, bare_bar ? "a bare | must stand in quotes: \"|\"" : "");
+    note_type(node, label, "\",\", \";\", \"|\" or tab", faults,
+              bare_bar ? "a bare | must stand in quotes: \"|\"" : "");
     return 0;
 }
 
@@ -92,12 +95,14 @@ void check_folds_file(const Keys& keys) {
     if (keys.value("folds_file") == nullptr) return;
     for (const std::string_view key : {"folds", "repeats", "seed"})
         if (keys.value(key) != nullptr)
-            keys.faults().add(keys.place(key), fmt::format("\"{}\" stands beside \"folds_file\", which is given instead of "
-                                                           "folds, repeats and seed; expected one or the other", key));
+            keys.faults().add(keys.place(key),
+                              fmt::format("\"{}\" stands beside \"folds_file\", which is given instead of "
+                                          "folds, repeats and seed; expected one or the other",
+                                          key));
 }
 
-void check_open_interval(std::optional<double> number, const Node& node, const std::string& label, std::string_view expected,
-                         bool inside, double& value, FaultList& faults) {
+void check_open_interval(std::optional<double> number, const Node& node, const std::string& label,
+                         std::string_view expected, bool inside, double& value, FaultList& faults) {
     if (!number) return;
     if (inside) {
         value = *number;
@@ -143,11 +148,13 @@ TrialPlan read_trial(const Node& node, Place place, const std::string& study_pat
     if (const Node* folds = keys.value("folds")) {
         trial.folds_place = folds->place;
         constexpr std::uint64_t kMost = std::numeric_limits<std::int32_t>::max();
-        if (const auto number = read_whole(*folds, keys.label("folds"), 2, kMost, faults)) trial.folds = static_cast<int>(*number);
+        if (const auto number = read_whole(*folds, keys.label("folds"), 2, kMost, faults))
+            trial.folds = static_cast<int>(*number);
     }
     if (const Node* repeats = keys.value("repeats")) {
         if (repeats->kind == Node::Kind::text && repeats->text == "auto") {
-            faults.add(repeats->place, "\"repeats: auto\" is not supported yet; expected a whole number from 1 to 10000");
+            faults.add(repeats->place,
+                       "\"repeats: auto\" is not supported yet; expected a whole number from 1 to 10000");
         } else if (const auto number = read_whole(*repeats, keys.label("repeats"), 1, 10'000, faults)) {
             trial.repeats = static_cast<int>(*number);
         }
@@ -157,14 +164,16 @@ TrialPlan read_trial(const Node& node, Place place, const std::string& study_pat
         trial.seed = read_whole(*seed, keys.label("seed"), 0, kMost, faults).value_or(trial.seed);
     }
     if (const Node* file = keys.value("folds_file")) {
-        trial.folds_file = read_name(*file, keys.label("folds_file"), "the name of a file with columns row, repeat and fold", faults);
+        trial.folds_file =
+            read_name(*file, keys.label("folds_file"), "the name of a file with columns row, repeat and fold", faults);
         if (trial.folds_file) trial.folds_path = resolve(study_path, trial.folds_file->text);
     }
     check_folds_file(keys);
     if (const Node* loss = keys.value("loss"))
         read_word(*loss, keys.label("loss"), std::array{Loss::squared, Loss::absolute}, trial.loss, faults);
     if (const Node* mediators = keys.value("mediators"))
-        read_word(*mediators, keys.label("mediators"), std::array{Mediators::measured, Mediators::predicted}, trial.mediators, faults);
+        read_word(*mediators, keys.label("mediators"), std::array{Mediators::measured, Mediators::predicted},
+                  trial.mediators, faults);
     return trial;
 }
 
@@ -186,7 +195,8 @@ VerdictRules read_verdict(const Node& node, Place place, FaultList& faults) {
     if (const Node* completeness = keys.value("completeness")) {
         const auto wanted = read_truth(*completeness, keys.label("completeness"), faults);
         if (wanted.value_or(false))
-            faults.add(completeness->place, "\"completeness: true\" is not supported yet; expected false, or leave the key out");
+            faults.add(completeness->place,
+                       "\"completeness: true\" is not supported yet; expected false, or leave the key out");
     }
     return verdict;
 }

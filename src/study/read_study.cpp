@@ -24,12 +24,13 @@ Study read_sections(const Node& root, const std::string& path, FaultList& faults
     if (const Node* target = keys.value("target"))
         study.target = read_name(*target, keys.label("target"), "a construct name", faults).value_or(Name{});
     if (const Node* controls = keys.value("controls"); controls != nullptr)
-        study.controls = read_names(*controls, keys.label("controls"), "construct names", faults);
+        study.controls = read_names(*controls, keys.label("controls"), "construct names", faults, 0);
     if (const Node* metric = keys.value("metric"))
         read_word(*metric, keys.label("metric"), std::array{Metric::standard, Metric::response}, study.metric, faults);
     if (const Node* theories = keys.value("theories")) study.theories = read_theories(*theories, faults);
     if (const Node* trial = keys.value("trial")) study.trial = read_trial(*trial, keys.place("trial"), path, faults);
-    if (const Node* verdict = keys.value("verdict")) study.verdict = read_verdict(*verdict, keys.place("verdict"), faults);
+    if (const Node* verdict = keys.value("verdict"))
+        study.verdict = read_verdict(*verdict, keys.place("verdict"), faults);
     return study;
 }
 
@@ -56,7 +57,8 @@ Study read_study_text(std::string_view text, const std::string& path) {
 Study read_study(const std::string& path) {
     std::error_code error;
     const auto status = std::filesystem::status(path, error);
-    if (status.type() == std::filesystem::file_type::not_found) fail(path, "there is no such file; expected a study file");
+    if (status.type() == std::filesystem::file_type::not_found)
+        fail(path, "there is no such file; expected a study file");
     if (status.type() == std::filesystem::file_type::directory) fail(path, "this is a folder; expected a study file");
     std::ifstream file(path, std::ios::binary);
     if (!file) fail(path, fmt::format("the file cannot be opened: {}", std::generic_category().message(errno)));

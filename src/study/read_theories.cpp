@@ -31,9 +31,8 @@ std::vector<Term> expand_crossed(const std::vector<Name>& members, Place place) 
         for (std::size_t k = 0; k < members.size(); ++k)
             if ((bits >> k) & 1U) subsets.back().push_back(k);
     }
-    std::sort(subsets.begin(), subsets.end(), [](const auto& a, const auto& b) {
-        return a.size() != b.size() ? a.size() < b.size() : a < b;
-    });
+    std::sort(subsets.begin(), subsets.end(),
+              [](const auto& a, const auto& b) { return a.size() != b.size() ? a.size() < b.size() : a < b; });
     for (const auto& subset : subsets) {
         Term term{subset.size() == 1 ? TermKind::score : TermKind::product, {}, place, true};
         for (const std::size_t k : subset) term.members.push_back(members[k]);
@@ -45,7 +44,8 @@ std::vector<Term> expand_crossed(const std::vector<Name>& members, Place place) 
 // Gathers the terms of one equation and keeps each once.
 class TermList {
 public:
-    TermList(const std::string& owner, std::size_t& budget, FaultList& faults) : owner_(owner), budget_(budget), faults_(faults) {}
+    TermList(const std::string& owner, std::size_t& budget, FaultList& faults)
+        : owner_(owner), budget_(budget), faults_(faults) {}
 
     void add_written(Term term) {
         const std::string key = term_key(term);
@@ -79,15 +79,16 @@ private:
     bool note_if_repeated(const std::string& key, const std::string& text, Place place) {
         const auto [first, is_new] = written_.emplace(key, place);
         if (!is_new)
-            faults_.add(place, fmt::format("{} has the term {} twice, first in line {}; expected it once", owner_, in_quotes(text),
-                                           first->second.line));
+            faults_.add(place, fmt::format("{} has the term {} twice, first in line {}; expected it once", owner_,
+                                           in_quotes(text), first->second.line));
         return is_new;
     }
 
     void append(const std::string& key, Term term) {
         if (budget_ == 0) {
             if (!std::exchange(told_, true))
-                faults_.add(term.place, fmt::format("{} takes the study above {} terms; expected fewer", owner_, kMostTerms));
+                faults_.add(term.place,
+                            fmt::format("{} takes the study above {} terms; expected fewer", owner_, kMostTerms));
             return;
         }
         --budget_;
@@ -107,8 +108,8 @@ private:
 void read_crossed(const Node& node, const std::string& label, Place place, TermList& terms, FaultList& faults) {
     const std::vector<Name> members = read_names(node, label, "construct names", faults);
     if (members.size() > kMostCrossed) {
-        faults.add(node.place, fmt::format("{} has {} members; expected at most {}, which are 255 terms", label, members.size(),
-                                           kMostCrossed));
+        faults.add(node.place, fmt::format("{} has {} members; expected at most {}, which are 255 terms", label,
+                                           members.size(), kMostCrossed));
     } else if (!members.empty()) {
         terms.add_crossed(members, place);
     }
@@ -117,8 +118,8 @@ void read_crossed(const Node& node, const std::string& label, Place place, TermL
 // One term written with a word, e.g. {minimum: [a, b]}.
 void read_worded_term(const Node& node, const std::string& owner, TermList& terms, FaultList& faults) {
     if (node.keys.size() != 1) {
-        faults.add(node.place, fmt::format("a term of {} must have one key ({}), found {}", owner, joined(term_words(), "or"),
-                                           node.keys.size()));
+        faults.add(node.place, fmt::format("a term of {} must have one key ({}), found {}", owner,
+                                           joined(term_words(), "or"), node.keys.size()));
         return;
     }
     const Node& key = node.keys.front();
@@ -126,7 +127,8 @@ void read_worded_term(const Node& node, const std::string& owner, TermList& term
     const std::string label = fmt::format("{} in {}", in_quotes(key.text), owner);
     const std::vector<std::string> words = term_words();
     if (std::find(words.begin(), words.end(), key.text) == words.end()) {
-        faults.add(key.place, fmt::format("{} has a term {}; expected {}", owner, in_quotes(key.text), joined(words, "or")),
+        faults.add(key.place,
+                   fmt::format("{} has a term {}; expected {}", owner, in_quotes(key.text), joined(words, "or")),
                    did_you_mean(key.text, words));
     } else if (key.text == "crossed") {
         read_crossed(value, label, key.place, terms, faults);
@@ -134,17 +136,21 @@ void read_worded_term(const Node& node, const std::string& owner, TermList& term
         if (const auto name = read_name(value, label, "one construct name", faults))
             terms.add_written({TermKind::square, {*name}, key.place, false});
     } else {
-        constexpr std::array kListed = {TermKind::product, TermKind::minimum, TermKind::maximum, TermKind::geometric_mean};
-        const auto kind = std::find_if(kListed.begin(), kListed.end(), [&](TermKind listed) { return key.text == word(listed); });
+        constexpr std::array kListed = {TermKind::product, TermKind::minimum, TermKind::maximum,
+                                        TermKind::geometric_mean};
+        const auto kind =
+            std::find_if(kListed.begin(), kListed.end(), [&](TermKind listed) { return key.text == word(listed); });
         std::vector<Name> members = read_names(value, label, "construct names", faults, 2);
         if (members.size() >= 2) terms.add_written({*kind, std::move(members), key.place, false});
     }
 }
 
-std::vector<Equation> read_equations(const Node& node, const std::string& theory, std::size_t& budget, FaultList& faults) {
+std::vector<Equation> read_equations(const Node& node, const std::string& theory, std::size_t& budget,
+                                     FaultList& faults) {
     std::vector<Equation> equations;
     if (node.kind != Node::Kind::map || node.items.empty()) {
-        note_type(node, "\"equations\" of " + theory, "outcomes with their terms, e.g. delivery: [planning, skill]", faults);
+        note_type(node, "\"equations\" of " + theory, "outcomes with their terms, e.g. delivery: [planning, skill]",
+                  faults);
         return equations;
     }
     for (std::size_t k = 0; k < node.items.size(); ++k) {
@@ -196,7 +202,8 @@ std::vector<Term> read_terms(const Node& node, const std::string& owner, std::si
     for (const Node& item : node.items) {
         if (item.kind == Node::Kind::map) {
             read_worded_term(item, owner, terms, faults);
-        } else if (const auto name = read_name(item, "a term of " + owner, "a construct name or a term such as {product: [a, b]}", faults)) {
+        } else if (const auto name = read_name(item, "a term of " + owner,
+                                               "a construct name or a term such as {product: [a, b]}", faults)) {
             terms.add_written({TermKind::score, {*name}, name->place, false});
         }
     }
@@ -210,8 +217,9 @@ std::vector<Theory> read_theories(const Node& node, FaultList& faults) {
         return theories;
     }
     if (node.items.size() < 2)
-        faults.add(node.place, fmt::format("\"theories\" must be a list of two or more theories, found {}; a contest needs a rival",
-                                           node.items.size()));
+        faults.add(node.place,
+                   fmt::format("\"theories\" must be a list of two or more theories, found {}; a contest needs a rival",
+                               node.items.size()));
     std::size_t budget = kMostTerms;
     for (const Node& item : node.items) theories.push_back(read_theory(item, theories.size() + 1, budget, faults));
     return theories;

@@ -85,11 +85,20 @@ Place SourceText::place_of_offset(std::size_t offset) const {
 
 std::vector<Fault> check_encoding(std::string_view raw, const std::string& path) {
     if (raw.size() > kMostBytes)
-        return {whole_file(path, fmt::format("the file has {} bytes; a study file may have at most {} (4 MiB)", raw.size(),
-                                             kMostBytes))};
+        return {whole_file(path, fmt::format("the file has {} bytes; a study file may have at most {} (4 MiB)",
+                                             raw.size(), kMostBytes))};
     if (raw.starts_with("\xFF\xFE") || raw.starts_with("\xFE\xFF"))
         return {whole_file(path, "the file is UTF-16 text; expected UTF-8, so save it as UTF-8")};
     const SourceText source(raw);
+    for (std::size_t line = 1; line <= source.n_lines(); ++line)
+        if (source.line(line).size() > kMostLineBytes)
+            return {{path,
+                     {line, 1},
+                     {},
+                     fmt::format("this line has {} bytes; a line of a study file may have at most {}",
+                                 source.line(line).size(), kMostLineBytes),
+                     {},
+                     {}}};
     const std::string& text = source.text();
     for (std::size_t offset = 0; offset < text.size();) {
         const Character character = character_at(text, offset);

@@ -1,4 +1,5 @@
-// Every key and word that a study file may hold, in one place: the reader, its messages and the help page's test agree on it.
+// Every key and word that a study file may hold, in one place: the reader, its messages and the help page's test agree
+// on it.
 #pragma once
 
 #include <array>
@@ -13,24 +14,32 @@ struct Key {
 };
 
 inline constexpr std::array kStudyKeys = {Key{"study", "a title"},
-                                   Key{"data", "where the survey's rows are"},
-                                   Key{"constructs", "what is measured, and by which columns"},
-                                   Key{"target", "the construct whose indicators every theory must predict"},
-                                   Key{"controls"},
-                                   Key{"metric"},
-                                   Key{"theories", "two or more rival theories"},
-                                   Key{"trial"},
-                                   Key{"verdict"}};
-inline constexpr std::array kDataKeys = {Key{"file", "the name of a data file"}, Key{"delimiter"}, Key{"missing_codes"},
-                                  Key{"rows"}, Key{"where"}, Key{"cluster"}, Key{"segment"}, Key{"holdout"}, Key{"order"}};
-inline constexpr std::array kConstructKeys = {Key{"indicators"}, Key{"reversed"}, Key{"range"}, Key{"weights"}, Key{"category"}};
+                                          Key{"data", "where the survey's rows are"},
+                                          Key{"constructs", "what is measured, and by which columns"},
+                                          Key{"target", "the construct whose indicators every theory must predict"},
+                                          Key{"controls"},
+                                          Key{"metric"},
+                                          Key{"theories", "two or more rival theories"},
+                                          Key{"trial"},
+                                          Key{"verdict"}};
+inline constexpr std::array kDataKeys = {Key{"file", "the name of a data file"},
+                                         Key{"delimiter"},
+                                         Key{"missing_codes"},
+                                         Key{"rows"},
+                                         Key{"where"},
+                                         Key{"cluster"},
+                                         Key{"segment"},
+                                         Key{"holdout"},
+                                         Key{"order"}};
+inline constexpr std::array kConstructKeys = {Key{"indicators"}, Key{"reversed"}, Key{"range"}, Key{"weights"},
+                                              Key{"category"}};
 inline constexpr std::array kTheoryKeys = {Key{"name", "a name of its own"}, Key{"claim"},
-                                    Key{"equations", "an outcome and its terms, the target among the outcomes"},
-                                    Key{"constructs"}};
-inline constexpr std::array kTermKeys = {Key{"product"}, Key{"crossed"}, Key{"minimum"}, Key{"maximum"}, Key{"square"},
-                                  Key{"geometric_mean"}};
-inline constexpr std::array kTrialKeys = {Key{"folds"}, Key{"repeats"}, Key{"seed"}, Key{"folds_file"}, Key{"loss"},
-                                   Key{"mediators"}};
+                                           Key{"equations", "an outcome and its terms, the target among the outcomes"},
+                                           Key{"constructs"}};
+inline constexpr std::array kTermKeys = {Key{"product"}, Key{"crossed"}, Key{"minimum"},
+                                         Key{"maximum"}, Key{"square"},  Key{"geometric_mean"}};
+inline constexpr std::array kTrialKeys = {Key{"folds"},      Key{"repeats"}, Key{"seed"},
+                                          Key{"folds_file"}, Key{"loss"},    Key{"mediators"}};
 inline constexpr std::array kVerdictKeys = {Key{"level"}, Key{"margin"}, Key{"completeness"}};
 
 }  // namespace rivalfold

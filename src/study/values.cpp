@@ -6,6 +6,7 @@
 #include <charconv>
 #include <cmath>
 #include <fmt/format.h>
+#include <limits>
 #include <unordered_map>
 #include <utility>
 
@@ -25,11 +26,13 @@ struct Group {
 
 // Where a key that stands in the wrong place belongs; empty if nowhere or in several places.
 std::string belongs_under(std::string_view name) {
-    const Group groups[] = {{kStudyKeys, "the study itself"},       {kDataKeys, "\"data\""},   {kConstructKeys, "a construct"},
-                            {kTheoryKeys, "a theory"}, {kTrialKeys, "\"trial\""}, {kVerdictKeys, "\"verdict\""}};
+    const Group groups[] = {{kStudyKeys, "the study itself"}, {kDataKeys, "\"data\""},
+                            {kConstructKeys, "a construct"},  {kTheoryKeys, "a theory"},
+                            {kTrialKeys, "\"trial\""},        {kVerdictKeys, "\"verdict\""}};
     std::string_view owner;
     for (const Group& group : groups) {
-        const bool has = std::any_of(group.keys.begin(), group.keys.end(), [&](const Key& key) { return key.name == name; });
+        const bool has =
+            std::any_of(group.keys.begin(), group.keys.end(), [&](const Key& key) { return key.name == name; });
         if (has && !owner.empty()) return {};
         if (has) owner = group.owner;
     }
@@ -42,7 +45,8 @@ std::string_view without_sign(std::string_view text) {
     return text.starts_with('+') || text.starts_with('-') ? text.substr(1) : text;
 }
 
-// The decimal form of YAML 1.2's core schema (section 10.3.2): digits, a point, an exponent; no inf, nan, hex or blanks.
+// The decimal form of YAML 1.2's core schema (section 10.3.2): digits, a point, an exponent; no inf, nan, hex or
+// blanks.
 bool is_decimal(std::string_view text) {
     text = without_sign(text);
     std::size_t n_digits = 0;
@@ -72,7 +76,8 @@ std::string number_hint(const Node& node) {
         return "write it in decimal digits";
     std::string with_point = node.text;
     std::replace(with_point.begin(), with_point.end(), ',', '.');
-    if (with_point != node.text && is_decimal(with_point)) return fmt::format("write {} with a decimal point", with_point);
+    if (with_point != node.text && is_decimal(with_point))
+        return fmt::format("write {} with a decimal point", with_point);
     std::string bare = node.text;
     std::erase(bare, '_');
     if (bare != node.text && is_decimal(bare)) return "write it without underscores";
@@ -82,6 +87,11 @@ std::string number_hint(const Node& node) {
 bool has_control(std::string_view text) {
     const auto all = characters(text);
     return std::any_of(all.begin(), all.end(), [](const Character& c) { return !c.valid || is_control(c.code); });
+}
+
+std::string null_hint(const Node& node) {
+    const bool written = node.kind == Node::Kind::nothing && !node.text.empty();
+    return written ? fmt::format("in quotes it would be text: {}", in_quotes(node.text)) : std::string();
 }
 
 std::string colon_hint(const Node& node) {
@@ -94,15 +104,17 @@ std::string colon_hint(const Node& node) {
 
 std::string found(const Node& node) {
     switch (node.kind) {
-        case Node::Kind::nothing: return "nothing";
+        case Node::Kind::nothing:
+            return node.text.empty() ? "nothing" : in_quotes(node.text) + ", which means nothing in YAML";
         case Node::Kind::text: return node.quoted ? "the quoted text " + in_quotes(node.text) : in_quotes(node.text);
-        case Node::Kind::list: return "a list";
-        case Node::Kind::map: return "keys with values";
+        case Node::Kind::list: return node.items.empty() ? "an empty list" : "a list";
+        case Node::Kind::map: return node.items.empty() ? "no keys" : "keys with values";
     }
     return "nothing";
 }
 
-void note_type(const Node& node, const std::string& label, std::string_view expected, FaultList& faults, std::string hint) {
+void note_type(const Node& node, const std::string& label, std::string_view expected, FaultList& faults,
+               std::string hint) {
     faults.add(node.place, fmt::format("{} must be {}, found {}", label, expected, found(node)), std::move(hint));
 }
 
@@ -116,7 +128,7 @@ Keys::Keys(const Node& map, Place place, std::string owner, std::span<const Key>
     }
     for (const Node& key : map.keys) note_unknown(key, known);
     for (const Key& key : known)
-        if (!key.needed.empty() && value(key.name) == nullptr)
+        if (!key.needed.empty() && !has_or_meant(key.name))
             faults.add(place_, fmt::format("{} needs the key \"{}\": expected {}", called, key.name, key.needed));
 }
 
@@ -124,10 +136,18 @@ void Keys::note_unknown(const Node& key, std::span<const Key> known) {
     const std::vector<std::string> names = names_of(known);
     if (std::find(names.begin(), names.end(), key.text) != names.end()) return;
     std::string hint = belongs_under(key.text);
-    if (hint.empty()) hint = did_you_mean(key.text, names);
-    faults_.add(key.place, fmt::format("{} has no key {}; expected {}", owner_.empty() ? "a study" : owner_, in_quotes(key.text),
-                                       joined(names, "or")),
+    if (hint.empty()) {
+        hint = did_you_mean(key.text, names);
+        meant_.push_back(nearest_name(key.text, names));
+    }
+    faults_.add(key.place,
+                fmt::format("{} has no key {}; expected {}", owner_.empty() ? "a study" : owner_, in_quotes(key.text),
+                            joined(names, "or")),
                 std::move(hint));
+}
+
+bool Keys::has_or_meant(std::string_view key) const {
+    return value(key) != nullptr || std::find(meant_.begin(), meant_.end(), key) != meant_.end();
 }
 
 const Node* Keys::value(std::string_view key) const {
@@ -146,7 +166,8 @@ std::string Keys::label(std::string_view key) const {
     return owner_.empty() ? fmt::format("\"{}\"", key) : fmt::format("\"{}\" of {}", key, owner_);
 }
 
-std::optional<std::string> read_prose(const Node& node, const std::string& label, std::string_view expected, FaultList& faults) {
+std::optional<std::string> read_prose(const Node& node, const std::string& label, std::string_view expected,
+                                      FaultList& faults) {
     std::string prose;
     for (const char letter : node.text) {
         const bool blank = letter == ' ' || letter == '\n' || letter == '\t';
@@ -159,14 +180,15 @@ std::optional<std::string> read_prose(const Node& node, const std::string& label
     return std::nullopt;
 }
 
-std::optional<Name> read_name(const Node& node, const std::string& label, std::string_view expected, FaultList& faults) {
+std::optional<Name> read_name(const Node& node, const std::string& label, std::string_view expected,
+                              FaultList& faults) {
     if (node.kind != Node::Kind::text || node.text.empty()) {
-        const bool null_word = node.kind == Node::Kind::nothing;
-        note_type(node, label, expected, faults, null_word ? "text that reads null or ~ must stand in quotes" : "");
+        note_type(node, label, expected, faults, null_hint(node));
         return std::nullopt;
     }
     if (has_control(node.text)) {
-        faults.add(node.place, fmt::format("{} must be {} without control characters, found {}", label, expected, found(node)));
+        faults.add(node.place,
+                   fmt::format("{} must be {} without control characters, found {}", label, expected, found(node)));
         return std::nullopt;
     }
     return Name{node.text, node.place};
@@ -176,11 +198,13 @@ std::vector<Name> read_names(const Node& node, const std::string& label, std::st
                              std::size_t least) {
     std::vector<Name> names;
     if (node.kind != Node::Kind::list || node.items.size() < least) {
-        const std::string hint = node.kind == Node::Kind::text ? fmt::format("write [{}]", in_quotes(node.text)) : std::string();
-        const bool few = node.kind == Node::Kind::list;
-        faults.add(node.place, fmt::format("{} must be a list of {} {}, found {}", label,
-                                           least < 2 ? "one or more" : "two or more", expected,
-                                           few ? fmt::format("{} of them", node.items.size()) : found(node)), hint);
+        const std::string hint =
+            node.kind == Node::Kind::text ? fmt::format("write [{}]", in_quotes(node.text)) : std::string();
+        const std::string_view many = least == 0 ? "" : least == 1 ? "one or more " : "two or more ";
+        const bool one = node.kind == Node::Kind::list && node.items.size() == 1;
+        faults.add(node.place,
+                   fmt::format("{} must be a list of {}{}, found {}", label, many, expected, one ? "one" : found(node)),
+                   hint);
         return names;
     }
     std::unordered_map<std::string, Place> seen;
@@ -209,15 +233,14 @@ std::vector<std::string> read_cells(const Node& node, const std::string& label, 
         if (item.kind == Node::Kind::text) {
             cells.push_back(item.text);
         } else {
-            note_type(item, "an item of " + label, "a cell value", faults,
-                      item.kind == Node::Kind::nothing ? "text that reads null or ~ must stand in quotes" : "");
+            note_type(item, "an item of " + label, "a cell value", faults, null_hint(item));
         }
     }
     return cells;
 }
 
-std::optional<std::uint64_t> read_whole(const Node& node, const std::string& label, std::uint64_t low, std::uint64_t high,
-                                        FaultList& faults) {
+std::optional<std::uint64_t> read_whole(const Node& node, const std::string& label, std::uint64_t low,
+                                        std::uint64_t high, FaultList& faults) {
     std::uint64_t number = 0;
     std::string_view digits = node.text;
     if (digits.starts_with('+')) digits.remove_prefix(1);
@@ -225,11 +248,16 @@ std::optional<std::uint64_t> read_whole(const Node& node, const std::string& lab
     const bool whole = node.kind == Node::Kind::text && !node.quoted && !digits.empty() && error == std::errc() &&
                        end == digits.data() + digits.size();
     if (whole && number >= low && number <= high) return number;
-    note_type(node, label, fmt::format("a whole number from {} to {}", low, high), faults, number_hint(node));
+    const bool open = high == std::numeric_limits<std::int32_t>::max();
+    note_type(node, label,
+              open ? fmt::format("a whole number of {} or more", low)
+                   : fmt::format("a whole number from {} to {}", low, high),
+              faults, number_hint(node));
     return std::nullopt;
 }
 
-std::optional<double> read_decimal(const Node& node, const std::string& label, std::string_view expected, FaultList& faults) {
+std::optional<double> read_decimal(const Node& node, const std::string& label, std::string_view expected,
+                                   FaultList& faults) {
     const bool plain = node.kind == Node::Kind::text && !node.quoted && is_decimal(node.text);
     if (!plain) {
         note_type(node, label, expected, faults, number_hint(node));
@@ -253,8 +281,8 @@ std::optional<bool> read_truth(const Node& node, const std::string& label, Fault
     return std::nullopt;
 }
 
-std::optional<std::size_t> read_choice(const Node& node, const std::string& label, const std::vector<std::string>& words,
-                                       FaultList& faults) {
+std::optional<std::size_t> read_choice(const Node& node, const std::string& label,
+                                       const std::vector<std::string>& words, FaultList& faults) {
     if (node.kind == Node::Kind::text)
         for (std::size_t k = 0; k < words.size(); ++k)
             if (node.text == words[k]) return k;

@@ -46,16 +46,17 @@ public:
     void OnNull(const YAML::Mark& mark, YAML::anchor_t anchor) override {
         Node node;
         const std::string_view rest = rest_of_line(mark);
-        const bool written = rest.starts_with('~') || rest.starts_with("null") || rest.starts_with("Null") ||
-                             rest.starts_with("NULL");
-        node.place = written ? place(mark) : key_place_or(mark);
+        for (const std::string_view written : {"~", "null", "Null", "NULL"})
+            if (rest.starts_with(written)) node.text = written;
+        node.place = node.text.empty() ? key_place_or(mark) : place(mark);
         check_properties(mark, "?", anchor);
         accept(std::move(node));
     }
 
     void OnAlias(const YAML::Mark& mark, YAML::anchor_t) override { fail_alias(place(mark), token(mark)); }
 
-    void OnScalar(const YAML::Mark& mark, const std::string& tag, YAML::anchor_t anchor, const std::string& value) override {
+    void OnScalar(const YAML::Mark& mark, const std::string& tag, YAML::anchor_t anchor,
+                  const std::string& value) override {
         check_properties(mark, tag, anchor);
         check_quote(mark);
         Node node;
@@ -79,6 +80,9 @@ public:
 
     // Notes what the YAML library found wrong, in our words.
     void note(const YAML::ParserException& error);
+    bool note_indentation(const YAML::ParserException& error);
+    bool note_open_quote();
+    bool is_closed(std::size_t opening) const;
     Node take() { return std::move(root_); }
 
 private:
@@ -103,16 +107,22 @@ private:
     // What is written at a mark, up to the next blank, comma or bracket, in quotes.
     std::string token(const YAML::Mark& mark) const {
         const std::string_view rest = rest_of_line(mark);
-        return in_quotes(rest.substr(0, std::max<std::size_t>(1, std::min(rest.find_first_of(" \t,[]{}"), rest.size()))));
+        return in_quotes(
+            rest.substr(0, std::max<std::size_t>(1, std::min(rest.find_first_of(" \t,[]{}"), rest.size()))));
     }
     // The mark of an empty value is that of whatever follows: the place of its key says more.
     Place key_place_or(const YAML::Mark& mark) const {
-        if (stack_.empty() || stack_.back().node.keys.empty()) return place(mark);
+        const bool is_value = !stack_.empty() && stack_.back().n_children % 2 == 1;
+        if (!is_value || stack_.back().node.keys.empty()) return place(mark);
         return stack_.back().node.keys.back().place;
     }
 
     void check_properties(const YAML::Mark& mark, const std::string& tag, YAML::anchor_t anchor);
     void check_quote(const YAML::Mark& mark);
+    void note_quote(Place place, std::string_view rest) {
+        faults_.add(place, fmt::format("the text {} has no closing quote; expected {} at its end",
+                                       in_quotes(rest.substr(1)), rest.front()));
+    }
     void open(Node::Kind kind, const YAML::Mark& mark, const std::string& tag, YAML::anchor_t anchor,
               YAML::EmitterStyle::value style);
     void close();
@@ -122,45 +132,73 @@ private:
     const SourceText& source_;
     FaultList& faults_;
     std::vector<Open> stack_;
-    Node root_;
+    Node root_ = {.kind = Node::Kind::nothing, .place = {1, 1}, .text = {}, .quoted = false, .keys = {}, .items = {}};
     std::size_t n_nodes_ = 0;
     std::size_t n_documents_ = 0;
 };
 
 void TreeBuilder::check_properties(const YAML::Mark& mark, const std::string& tag, YAML::anchor_t anchor) {
     if (++n_nodes_ > kMostNodes)
-        fail(place(mark), fmt::format("the file holds more than {} values; a study file may not be that large", kMostNodes));
+        fail(place(mark),
+             fmt::format("the file holds more than {} values; a study file may not be that large", kMostNodes));
     const std::string_view rest = rest_of_line(mark);
     const bool tagged = rest.starts_with('!') || (!tag.empty() && tag != "?" && tag != "!");
     if (tagged)
-        faults_.add(place(mark), fmt::format("{} is a tag, which a study file may not hold; expected the plain value", token(mark)));
+        faults_.add(place(mark),
+                    fmt::format("{} is a tag, which a study file may not hold; expected the plain value", token(mark)));
     if (!tagged && anchor != 0)
-        faults_.add(place(mark), fmt::format("{} is an anchor, which a study file may not hold; expected the plain value", token(mark)));
+        faults_.add(
+            place(mark),
+            fmt::format("{} is an anchor, which a study file may not hold; expected the plain value", token(mark)));
 }
 
 // The YAML library takes a quote that is never closed as closed by the end of the file.
 void TreeBuilder::check_quote(const YAML::Mark& mark) {
+    const std::string_view rest = rest_of_line(mark);
+    if ((rest.starts_with('"') || rest.starts_with('\'')) && !is_closed(offset(mark))) {
+        note_quote(place(mark), rest);
+        throw Stop();
+    }
+}
+
+bool TreeBuilder::is_closed(std::size_t opening) const {
     const std::string& text = source_.text();
-    const std::size_t from = offset(mark);
-    if (from >= text.size() || (text[from] != '"' && text[from] != '\'')) return;
-    const char quote = text[from];
-    for (std::size_t at = from + 1; at < text.size(); ++at) {
+    const char quote = text[opening];
+    for (std::size_t at = opening + 1; at < text.size(); ++at) {
         if (quote == '"' && text[at] == '\\') {
             ++at;
         } else if (text[at] == quote) {
-            if (quote == '"' || at + 1 >= text.size() || text[at + 1] != quote) return;
+            if (quote == '"' || at + 1 >= text.size() || text[at + 1] != quote) return true;
             ++at;
         }
     }
-    fail(place(mark), fmt::format("the text {} has no closing quote; expected {} at its end",
-                                  in_quotes(rest_of_line(mark).substr(1)), quote));
+    return false;
+}
+
+// Where the library met the end of the file inside quotes it does not say where they opened: at the last quote that
+// stands where a value may begin and is not closed after it.
+bool TreeBuilder::note_open_quote() {
+    const std::string& text = source_.text();
+    constexpr std::size_t kMostTried = 1000;
+    std::size_t at = text.size();
+    for (std::size_t n_tried = 0; n_tried < kMostTried && at > 0; ++n_tried) {
+        at = text.find_last_of("\"'", at - 1);
+        if (at == std::string::npos) return false;
+        const bool may_open = at == 0 || std::string_view(" \n\t[{,:-").find(text[at - 1]) != std::string_view::npos;
+        if (!may_open || is_closed(at)) continue;
+        const std::string_view rest = std::string_view(text).substr(at, kLongestToken);
+        note_quote(source_.place_of_offset(at), rest.substr(0, rest.find('\n')));
+        return true;
+    }
+    return false;
 }
 
 void TreeBuilder::open(Node::Kind kind, const YAML::Mark& mark, const std::string& tag, YAML::anchor_t anchor,
                        YAML::EmitterStyle::value style) {
     check_properties(mark, tag, anchor);
     if (stack_.size() >= kMostDepth)
-        fail(place(mark), fmt::format("lists and keys are nested more than {} levels deep here; a study needs 7", kMostDepth));
+        fail(place(mark),
+             fmt::format("lists and keys are nested more than {} levels deep here; a study needs 7", kMostDepth));
     Open opened;
     opened.node.kind = kind;
     opened.node.place = place(mark);
@@ -190,15 +228,20 @@ void TreeBuilder::accept(Node node) {
 
 void TreeBuilder::accept_key(Open& map, Node node) {
     map.skips_value = true;
-    if (node.kind == Node::Kind::nothing) {
+    if (node.kind == Node::Kind::nothing && !node.text.empty()) {
+        faults_.add(node.place,
+                    fmt::format("the key {} means nothing in YAML; expected a name, in quotes if that is the name",
+                                in_quotes(node.text)));
+    } else if (node.kind == Node::Kind::nothing) {
         faults_.add(node.place, "a key is missing here; expected a name before the colon");
     } else if (node.kind != Node::Kind::text) {
-        faults_.add(node.place, "a list or a group of keys stands where a key was expected; expected a name before the colon");
+        faults_.add(node.place,
+                    "a list or a group of keys stands where a key was expected; expected a name before the colon");
     } else if (node.text == "<<" && !node.quoted) {
         faults_.add(node.place, "\"<<\" is a merge key, which a study file may not hold; expected the keys themselves");
     } else if (const auto [first, is_new] = map.seen.emplace(node.text, node.place); !is_new) {
-        faults_.add(node.place, fmt::format("the key {} stands twice, first in line {}; expected it once", in_quotes(node.text),
-                                            first->second.line));
+        faults_.add(node.place, fmt::format("the key {} stands twice, first in line {}; expected it once",
+                                            in_quotes(node.text), first->second.line));
     } else {
         map.skips_value = false;
         map.node.keys.push_back(std::move(node));
@@ -213,21 +256,51 @@ struct Wording {
 // The library's messages that a study file can meet, in words that say what to do.
 constexpr Wording kWordings[] = {
     {YAML::ErrorMsg::TAB_IN_INDENTATION, "a tab indents this line; expected spaces"},
-    {YAML::ErrorMsg::MAP_VALUE, "a colon makes a key here, where none can stand; expected text with a colon in it to be in quotes"},
     {YAML::ErrorMsg::MAP_KEY, "a key cannot stand here; expected it on a line of its own"},
     {YAML::ErrorMsg::BLOCK_ENTRY, "a list item cannot stand here; expected the dash on a line of its own"},
     {YAML::ErrorMsg::FLOW_END, "a bracket closes here that was never opened"},
-    {YAML::ErrorMsg::END_OF_MAP, "this line does not fit the keys above it; expected the same indentation, and a colon and a space after each key"},
+    {YAML::ErrorMsg::END_OF_MAP,
+     "this line does not fit the keys above it; expected the same indentation, and a colon and a space after each key"},
     {YAML::ErrorMsg::END_OF_SEQ, "this line does not fit the list above it; expected a dash at the same indentation"},
     {YAML::ErrorMsg::END_OF_MAP_FLOW, "\"}\" or a comma is missing here or before"},
     {YAML::ErrorMsg::END_OF_SEQ_FLOW, "\"]\" or a comma is missing here or before"},
-    {YAML::ErrorMsg::EOF_IN_SCALAR, "a quote is never closed"},
     {YAML::ErrorMsg::DOC_IN_SCALAR, "a quote is still open at this document mark"},
-    {YAML::ErrorMsg::INVALID_ESCAPE, "the backslash here starts no known escape; expected text with a backslash to be in single quotes"},
-    {YAML::ErrorMsg::INVALID_HEX, "the backslash here starts no known escape; expected text with a backslash to be in single quotes"},
-    {YAML::ErrorMsg::INVALID_UNICODE, "the backslash here names no character; expected text with a backslash to be in single quotes"},
-    {YAML::ErrorMsg::UNKNOWN_TOKEN, "the character here can start no value"},
+    {YAML::ErrorMsg::INVALID_ESCAPE,
+     "the backslash here starts no known escape; expected text with a backslash to be in single quotes"},
+    {YAML::ErrorMsg::INVALID_HEX,
+     "the backslash here starts no known escape; expected text with a backslash to be in single quotes"},
+    {YAML::ErrorMsg::INVALID_UNICODE,
+     "the backslash here names no character; expected text with a backslash to be in single quotes"},
 };
+
+// Tabs, keys that do not fit the lines above them, and colons inside text. True if it was one of them.
+bool TreeBuilder::note_indentation(const YAML::ParserException& error) {
+    const std::string_view message = error.msg;
+    const bool colon = message == YAML::ErrorMsg::MAP_VALUE;
+    if (!colon && message != YAML::ErrorMsg::END_OF_MAP && message != YAML::ErrorMsg::TAB_IN_INDENTATION) return false;
+    const std::size_t line_index = place(error.mark).line - 1;
+    const std::string_view line = source_.line(line_index + 1);
+    const std::size_t indent = std::min(line.find_first_not_of(" \t"), line.size());
+    const std::size_t tab = line.find('\t');
+    if (tab < indent) {
+        faults_.add(source_.place(line_index, tab), "a tab indents this line; expected spaces");
+        return true;
+    }
+    if (!colon) return false;
+    const std::size_t at = count_from(error.mark.column);
+    if (line.substr(0, at).find(": ") != std::string_view::npos) {
+        faults_.add(place(error.mark),
+                    "a colon followed by a space makes a key here, where none can stand; expected text "
+                    "that holds one to stand in quotes");
+    } else {
+        faults_.add(
+            source_.place(line_index, indent),
+            fmt::format("the key {} does not fit the lines above it; expected the same indentation as its neighbours, "
+                        "and a colon and a space after each key",
+                        in_quotes(line.substr(indent, std::max(at, indent) - indent))));
+    }
+    return true;
+}
 
 void TreeBuilder::note(const YAML::ParserException& error) {
     const std::string_view rest = rest_of_line(error.mark);
@@ -239,19 +312,26 @@ void TreeBuilder::note(const YAML::ParserException& error) {
             return;
         }
     }
+    if (message == YAML::ErrorMsg::EOF_IN_SCALAR && note_open_quote()) return;
     const bool cut_short = offset(error.mark) >= source_.text().find_last_not_of(" \n") ||
                            message == YAML::ErrorMsg::END_OF_SEQ_FLOW || message == YAML::ErrorMsg::END_OF_MAP_FLOW;
-    const auto innermost = std::find_if(stack_.rbegin(), stack_.rend(), [](const Open& open) { return open.in_brackets; });
+    const auto innermost =
+        std::find_if(stack_.rbegin(), stack_.rend(), [](const Open& open) { return open.in_brackets; });
     if (cut_short && innermost != stack_.rend()) {
         const bool list = innermost->node.kind == Node::Kind::list;
-        faults_.add(innermost->node.place, fmt::format("the bracket \"{}\" is not closed by line {}; expected {} or a comma",
-                                                       list ? '[' : '{', place(error.mark).line, list ? "\"]\"" : "\"}\""));
+        faults_.add(innermost->node.place,
+                    fmt::format("the bracket \"{}\" is not closed by line {}; expected {} or a comma", list ? '[' : '{',
+                                place(error.mark).line, list ? "\"]\"" : "\"}\""));
         return;
     }
+    if (note_indentation(error)) return;
     std::string text = fmt::format("this is not YAML: {}", message);
     for (const Wording& wording : kWordings)
         if (message.starts_with(wording.library)) text = wording.ours;
-    const bool reserved = !rest.empty() && std::string_view("@`%,&*|>").find(rest.front()) != std::string_view::npos;
+    const bool unknown = message == YAML::ErrorMsg::UNKNOWN_TOKEN;
+    if (unknown) text = fmt::format("{} begins with a character that can begin no value", token(error.mark));
+    const bool reserved = (unknown || message.starts_with("end of")) && !rest.empty() &&
+                          std::string_view("@`%,").find(rest.front()) != std::string_view::npos;
     faults_.add(place(error.mark), std::move(text),
                 reserved ? fmt::format("text that begins with {} must stand in quotes", rest.front()) : std::string());
 }
