@@ -19,7 +19,8 @@ constexpr std::size_t kMostLevels = 50;  ///< a category with more is likely to 
 int index_in(const std::vector<std::size_t>& columns, std::size_t column, const std::vector<std::string>& header) {
     const auto at = std::find(columns.begin(), columns.end(), column);
     if (at == columns.end())
-        throw std::invalid_argument(fmt::format("the table lacks the column \"{}\", which survey_columns() names", header[column]));
+        throw std::invalid_argument(
+            fmt::format("the table lacks the column {}, which survey_columns() names", in_quotes(header[column])));
     return static_cast<int>(at - columns.begin());
 }
 

@@ -1,33 +1,27 @@
 #include "data/cells.hpp"
 
 #include <algorithm>
-#include <cstring>
 
 namespace rivalfold {
-
-std::size_t count_line_breaks(std::string_view text) {
-    std::size_t breaks = 0;
-    for (std::size_t at = 0; at < text.size(); ++at)
-        if (text[at] == '\n' || (text[at] == '\r' && (at + 1 == text.size() || text[at + 1] != '\n'))) ++breaks;
-    return breaks;
-}
 
 Cell quoted_cell(const char* quote, const char* end, char delimiter) {
     Cell cell;
     cell.quoted = true;
     const char* const begin = quote + 1;
     const char* at = begin;
-    for (;;) {
-        at = at < end ? static_cast<const char*>(std::memchr(at, '"', static_cast<std::size_t>(end - at))) : nullptr;
-        if (at == nullptr || at + 1 >= end || at[1] != '"') break;
-        cell.doubled = true;
-        at += 2;
+    for (; at < end; ++at) {
+        const char c = *at;
+        if (c == '"') {
+            if (at + 1 == end || at[1] != '"') break;
+            cell.doubled = true;
+            ++at;
+        } else if (c == '\n' || (c == '\r' && (at + 1 == end || at[1] != '\n'))) {
+            ++cell.line_breaks;
+        }
     }
-    cell.open = at == nullptr;
-    const char* const close = cell.open ? end : at;
-    cell.text = {begin, static_cast<std::size_t>(close - begin)};
-    cell.line_breaks = count_line_breaks(cell.text);
-    at = cell.open ? end : close + 1;
+    cell.open = at == end;
+    cell.text = {begin, static_cast<std::size_t>(at - begin)};
+    if (!cell.open) ++at;
     while (at < end && is_blank(*at, delimiter)) ++at;
     const char* const after = at;
     while (at < end && *at != delimiter && *at != '\n' && *at != '\r') ++at;

@@ -11,7 +11,7 @@ namespace rivalfold {
 struct Cell {
     std::string_view text;        ///< as written, without the enclosing quotes; doubled quotes still doubled
     const char* next = nullptr;   ///< where the next cell or row begins
-    std::size_t line_breaks = 0;  ///< inside the quotes
+    std::size_t line_breaks = 0;  ///< inside the quotes: LF, CRLF or CR
     bool row_ends = false;        ///< it is the last of its row
     bool quoted = false;
     bool doubled = false;  ///< holds doubled quotes
@@ -21,9 +21,6 @@ struct Cell {
 
 /// The quoted cell whose opening quote stands at `quote`.
 Cell quoted_cell(const char* quote, const char* end, char delimiter);
-
-/// LF, CRLF and CR in the text.
-std::size_t count_line_breaks(std::string_view text);
 
 /// The text of a quoted cell with doubled quotes made single.
 std::string single_quotes(std::string_view text);

@@ -129,8 +129,9 @@ std::string say_lost(const Study& study, const Table& table, const RowChoice& ch
     std::string lost;
     for (const Dropped& dropped : choice.dropped)
         lost += fmt::format("{}{} ({})", lost.empty() ? "" : ", ", dropped.reason, dropped.rows.size());
-    return fmt::format("{} of the {} rows of {} can be used{}{}", choice.rows.empty() ? "none" : "only 1", table.n_rows,
-                       in_quotes(study.data.file.text), lost.empty() ? "" : "; lost to: ", lost);
+    const std::string left = choice.rows.empty() ? fmt::format("none of the {} rows", table.n_rows) : "only 1 row";
+    return fmt::format("{} of {} can be used{}{}", left, in_quotes(study.data.file.text), lost.empty() ? "" : "; lost to: ",
+                       lost);
 }
 
 }  // namespace rivalfold

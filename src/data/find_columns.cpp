@@ -111,7 +111,7 @@ private:
             }
             if (!any)
                 say(name.place,
-                    fmt::format("construct {} reverses {}, which is not among its indicators",
+                    fmt::format("construct {} reverses {}, which is none of its indicators",
                                 in_quotes(construct.name.text), in_quotes(name.text)),
                     did_you_mean(name.text, names));
             else if (!construct.range)

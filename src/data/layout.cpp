@@ -148,7 +148,8 @@ Layout read_layout(const ByteSource& source, const std::string& file, char delim
             return layout;
         }
         if (whole) fail(file, {}, "the file is empty; expected a header row with the column names");
-        if (sample.size() >= kMostRowBytes) fail(file, "header", fmt::format("is longer than {} bytes; is a closing quote missing?", kMostRowBytes));
+        if (sample.size() >= kMostRowBytes)
+            fail(file, "header", fmt::format("longer than {} bytes; is a closing quote missing?", kMostRowBytes));
         sample.resize(sample.size() * 4);
         sample.resize(source.read_at(0, sample.data(), sample.size()));
         text = std::string_view(sample).substr(static_cast<std::size_t>(layout.rows_begin));

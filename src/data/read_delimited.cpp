@@ -11,9 +11,12 @@
 
 #include <algorithm>
 #include <atomic>
+#include <cstdint>
 #include <future>
 #include <new>
 #include <thread>
+
+#include <sys/mman.h>
 
 namespace rivalfold {
 namespace {
@@ -38,10 +41,23 @@ ColumnChoice choose_columns(const ChooseColumns& choose, const Layout& layout, F
     return {};
 }
 
+/// First touches of fresh memory cost more than reading the file does; large pages make them few.
+void ask_for_large_pages([[maybe_unused]] Eigen::MatrixXd& numbers) {
+#ifdef MADV_HUGEPAGE
+    constexpr std::uintptr_t kLargePage = std::uintptr_t{1} << 21;
+    const auto begin = reinterpret_cast<std::uintptr_t>(numbers.data());
+    const std::uintptr_t end = begin + static_cast<std::uintptr_t>(numbers.size()) * sizeof(double);
+    const std::uintptr_t first = (begin + kLargePage - 1) / kLargePage * kLargePage;
+    // A wish: where it is not granted, nothing changes but the speed.
+    if (first + kLargePage <= end) (void)madvise(reinterpret_cast<void*>(first), end - first, MADV_HUGEPAGE);
+#endif
+}
+
 void make_room(Table& table, const std::string& file) {
     const std::size_t n_numbers = table.chosen.numbers.size();
     try {
         table.numbers.resize(static_cast<Eigen::Index>(table.n_rows), static_cast<Eigen::Index>(n_numbers));
+        ask_for_large_pages(table.numbers);
         table.texts.assign(table.chosen.texts.size(), {});
         for (auto& column : table.texts) column.resize(table.n_rows);
     } catch (const std::bad_alloc&) {

@@ -86,7 +86,9 @@ const char* StretchReader::read_row(const char* at) {
             }
             double value = 0;
             Mark mark = Mark::none;
-            const char* const stop = read_plain_number(at, rules_.decimal_comma(), value, mark);
+            const bool quoted = *at == '"';
+            const char* stop = read_plain_number(at + (quoted ? 1 : 0), rules_.decimal_comma(), value, mark);
+            if (quoted && stop != nullptr) stop = *stop == '"' ? stop + 1 : nullptr;
             if (stop != nullptr && (*stop == delimiter || *stop == '\n' || *stop == '\r')) {
                 store(use.number, rules_.without_codes(value));
                 if (mark != Mark::none) note_mark(static_cast<std::size_t>(use.number), mark);
