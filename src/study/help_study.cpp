@@ -8,14 +8,14 @@ std::string_view help_study() {
 Unknown keys, keys written twice and wrong types are errors that name file, line
 and column. Keys marked * are required; the others have the default shown in
 parentheses. Anchors, aliases, merge keys, tags and a second document are
-errors. Limits: 4 MiB, 64 levels, 200000 values, 10000 terms.
+errors. Limits: 4 MiB, 64 KiB a line, 64 levels, 200000 values, 10000 terms.
 
 An example (invented):
 
     study: What carries a refit project to delivery
     data: {file: refits.csv, missing_codes: [-9], cluster: yard}
     constructs:
-      planning: {indicators: [pln1, pln2, pln3], reversed: [pln3], range: [1, 7]}
+      planning: {indicators: [pln1, pln2], reversed: [pln2], range: [1, 7]}
       skill:    {indicators: [skl*], range: [1, 7]}
       delivery: {indicators: [dlv1, dlv2, dlv3], range: [1, 7]}
       sector:   {category: sector}
