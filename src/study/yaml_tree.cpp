@@ -1,6 +1,7 @@
 #include "study/yaml_tree.hpp"
 
 #include "study/characters.hpp"
+#include "study/yaml_syntax.hpp"
 
 #include <algorithm>
 #include <fmt/format.h>
@@ -81,8 +82,6 @@ public:
     // Notes what the YAML library found wrong, in our words.
     void note(const YAML::ParserException& error);
     bool note_indentation(const YAML::ParserException& error);
-    bool note_open_quote();
-    bool is_closed(std::size_t opening) const;
     Node take() { return std::move(root_); }
 
 private:
@@ -99,11 +98,12 @@ private:
     std::size_t offset(const YAML::Mark& mark) const {
         return source_.offset(count_from(mark.line), count_from(mark.column));
     }
-    // Cut where no message would still show it: a line may be 4 MiB long.
-    std::string_view rest_of_line(const YAML::Mark& mark) const {
-        const std::string_view rest = std::string_view(source_.text()).substr(offset(mark), kLongestToken);
+    // Cut where no message would still show it: a line may be long.
+    std::string_view line_from(std::size_t offset) const {
+        const std::string_view rest = std::string_view(source_.text()).substr(offset, kLongestToken);
         return rest.substr(0, rest.find('\n'));
     }
+    std::string_view rest_of_line(const YAML::Mark& mark) const { return line_from(offset(mark)); }
     // What is written at a mark, up to the next blank, comma or bracket, in quotes.
     std::string token(const YAML::Mark& mark) const {
         const std::string_view rest = rest_of_line(mark);
@@ -155,42 +155,10 @@ void TreeBuilder::check_properties(const YAML::Mark& mark, const std::string& ta
 // The YAML library takes a quote that is never closed as closed by the end of the file.
 void TreeBuilder::check_quote(const YAML::Mark& mark) {
     const std::string_view rest = rest_of_line(mark);
-    if ((rest.starts_with('"') || rest.starts_with('\'')) && !is_closed(offset(mark))) {
+    if ((rest.starts_with('"') || rest.starts_with('\'')) && !is_quote_closed(source_.text(), offset(mark))) {
         note_quote(place(mark), rest);
         throw Stop();
     }
-}
-
-bool TreeBuilder::is_closed(std::size_t opening) const {
-    const std::string& text = source_.text();
-    const char quote = text[opening];
-    for (std::size_t at = opening + 1; at < text.size(); ++at) {
-        if (quote == '"' && text[at] == '\\') {
-            ++at;
-        } else if (text[at] == quote) {
-            if (quote == '"' || at + 1 >= text.size() || text[at + 1] != quote) return true;
-            ++at;
-        }
-    }
-    return false;
-}
-
-// Where the library met the end of the file inside quotes it does not say where they opened: at the last quote that
-// stands where a value may begin and is not closed after it.
-bool TreeBuilder::note_open_quote() {
-    const std::string& text = source_.text();
-    constexpr std::size_t kMostTried = 1000;
-    std::size_t at = text.size();
-    for (std::size_t n_tried = 0; n_tried < kMostTried && at > 0; ++n_tried) {
-        at = text.find_last_of("\"'", at - 1);
-        if (at == std::string::npos) return false;
-        const bool may_open = at == 0 || std::string_view(" \n\t[{,:-").find(text[at - 1]) != std::string_view::npos;
-        if (!may_open || is_closed(at)) continue;
-        const std::string_view rest = std::string_view(text).substr(at, kLongestToken);
-        note_quote(source_.place_of_offset(at), rest.substr(0, rest.find('\n')));
-        return true;
-    }
-    return false;
 }
 
 void TreeBuilder::open(Node::Kind kind, const YAML::Mark& mark, const std::string& tag, YAML::anchor_t anchor,
@@ -248,31 +216,6 @@ void TreeBuilder::accept_key(Open& map, Node node) {
     }
 }
 
-struct Wording {
-    const char* library;
-    const char* ours;
-};
-
-// The library's messages that a study file can meet, in words that say what to do.
-constexpr Wording kWordings[] = {
-    {YAML::ErrorMsg::TAB_IN_INDENTATION, "a tab indents this line; expected spaces"},
-    {YAML::ErrorMsg::MAP_KEY, "a key cannot stand here; expected it on a line of its own"},
-    {YAML::ErrorMsg::BLOCK_ENTRY, "a list item cannot stand here; expected the dash on a line of its own"},
-    {YAML::ErrorMsg::FLOW_END, "a bracket closes here that was never opened"},
-    {YAML::ErrorMsg::END_OF_MAP,
-     "this line does not fit the keys above it; expected the same indentation, and a colon and a space after each key"},
-    {YAML::ErrorMsg::END_OF_SEQ, "this line does not fit the list above it; expected a dash at the same indentation"},
-    {YAML::ErrorMsg::END_OF_MAP_FLOW, "\"}\" or a comma is missing here or before"},
-    {YAML::ErrorMsg::END_OF_SEQ_FLOW, "\"]\" or a comma is missing here or before"},
-    {YAML::ErrorMsg::DOC_IN_SCALAR, "a quote is still open at this document mark"},
-    {YAML::ErrorMsg::INVALID_ESCAPE,
-     "the backslash here starts no known escape; expected text with a backslash to be in single quotes"},
-    {YAML::ErrorMsg::INVALID_HEX,
-     "the backslash here starts no known escape; expected text with a backslash to be in single quotes"},
-    {YAML::ErrorMsg::INVALID_UNICODE,
-     "the backslash here names no character; expected text with a backslash to be in single quotes"},
-};
-
 // Tabs, keys that do not fit the lines above them, and colons inside text. True if it was one of them.
 bool TreeBuilder::note_indentation(const YAML::ParserException& error) {
     const std::string_view message = error.msg;
@@ -312,7 +255,10 @@ void TreeBuilder::note(const YAML::ParserException& error) {
             return;
         }
     }
-    if (message == YAML::ErrorMsg::EOF_IN_SCALAR && note_open_quote()) return;
+    if (const auto quote = find_open_quote(source_.text()); quote && message == YAML::ErrorMsg::EOF_IN_SCALAR) {
+        note_quote(source_.place_of_offset(*quote), line_from(*quote));
+        return;
+    }
     const bool cut_short = offset(error.mark) >= source_.text().find_last_not_of(" \n") ||
                            message == YAML::ErrorMsg::END_OF_SEQ_FLOW || message == YAML::ErrorMsg::END_OF_MAP_FLOW;
     const auto innermost =
@@ -325,9 +271,7 @@ void TreeBuilder::note(const YAML::ParserException& error) {
         return;
     }
     if (note_indentation(error)) return;
-    std::string text = fmt::format("this is not YAML: {}", message);
-    for (const Wording& wording : kWordings)
-        if (message.starts_with(wording.library)) text = wording.ours;
+    std::string text = syntax_wording(message);
     const bool unknown = message == YAML::ErrorMsg::UNKNOWN_TOKEN;
     if (unknown) text = fmt::format("{} begins with a character that can begin no value", token(error.mark));
     const bool reserved = (unknown || message.starts_with("end of")) && !rest.empty() &&

@@ -4,6 +4,7 @@
 #include <clocale>
 #include <filesystem>
 #include <fstream>
+#include <locale>
 
 #include "study/changed_study.hpp"
 
@@ -253,6 +254,25 @@ TEST_CASE("numbers are read the same under a foreign numeric locale", "[study]")
     const Study study = read_study_text(kEveryKey, "study.yaml");
     std::setlocale(LC_NUMERIC, before.c_str());
     CHECK(study.constructs.at(0).range.value().second == 7.5);
+}
+
+TEST_CASE("numbers are read and shown the same when C++ streams group digits", "[study]") {
+    struct Grouped : std::numpunct<char> {
+        char do_decimal_point() const override { return ','; }
+        char do_thousands_sep() const override { return '.'; }
+        std::string do_grouping() const override { return "\3"; }
+    };
+    const std::locale before = std::locale::global(std::locale(std::locale::classic(), new Grouped));
+    const Study study = read_study_text(kEveryKey, "study.yaml");
+    const std::string faults = faults_after({{"folds: 5", "repeats: 20000"}});
+    std::locale::global(before);
+    CHECK(study.constructs.at(0).range.value().second == 7.5);
+    CHECK(study.trial.seed == 18446744073709551615ULL);
+    CHECK(faults == R"(
+study.yaml:19:12: error: "repeats" of "trial" must be a whole number from 1 to 10000, found "20000"
+   19 |   repeats: 20000
+      |            ^
+)");
 }
 
 TEST_CASE("every word and every term has its text", "[study]") {
