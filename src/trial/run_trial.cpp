@@ -47,7 +47,7 @@ public:
     }
 
     void fit_full_model();
-    void run_splits(const FoldPlan& plan);
+    void run_splits(const FoldPlan& plan, const std::function<void(double)>& progress);
     Trial take() { return std::move(trial_); }
 
 private:
@@ -166,7 +166,7 @@ void Contest::throw_constant(int column, int repeat, std::size_t fold) const {
     throw FaultError(std::move(fault));
 }
 
-void Contest::run_splits(const FoldPlan& plan) {
+void Contest::run_splits(const FoldPlan& plan, const std::function<void(double)>& progress) {
     open_results(plan);
     std::vector<const Contestant*> view;
     for (const auto& contestant : contestants_) view.push_back(contestant.get());
@@ -198,7 +198,10 @@ void Contest::run_splits(const FoldPlan& plan) {
     for (int r = 0; r < plan.repeats; ++r)
         for (std::uint32_t first = 0; first < static_cast<std::uint32_t>(plan.folds); first += kMostFolds) {
             ranges.push_back({plan.repeat(r), first, std::min(static_cast<std::uint32_t>(plan.folds), first + kMostFolds), r});
-            if (ranges.size() == most_ranges) run_wave();
+            if (ranges.size() == most_ranges) {
+                run_wave();
+                if (progress) progress(static_cast<double>(r + 1) / plan.repeats);
+            }
         }
     if (!ranges.empty()) run_wave();
     for (std::size_t c = 0; c < contestants_.size(); ++c)
@@ -213,15 +216,15 @@ void Contest::take_wave(const FoldPlan& plan, const std::vector<FoldRange>& rang
             for (std::size_t c = 0; c < contestants_.size(); ++c) {
                 ContestantLosses& losses = trial_.contestants[c];
                 const Fit& fit = fits[r][k].fits[c];
-                const std::string where = fmt::format("in repeat {}, fold {}", ranges[r].repeat + 1, ranges[r].first + k + 1);
+                const auto where = [&] { return fmt::format("in repeat {}, fold {}", ranges[r].repeat + 1, ranges[r].first + k + 1); };
                 if (fit.status != FitStatus::fitted && !losses.failed) {
                     losses.failed = true;
-                    losses.reason = fmt::format("{}: {}", where, fit.reason);
+                    losses.reason = fmt::format("{}: {}", where(), fit.reason);
                 }
                 const SplitErrors& split = errors[r][k];
                 if (!losses.failed && !std::isfinite(split.loss[c])) {
                     losses.failed = true;
-                    losses.reason = fmt::format("{}: a held-out row has no finite prediction: a score there is zero, negative or far outside the training rows", where);
+                    losses.reason = fmt::format("{}: a held-out row has no finite prediction: a score there is zero, negative or far outside the training rows", where());
                 }
                 losses.split_loss(static_cast<Eigen::Index>(ranges[r].repeat) * plan.folds + static_cast<Eigen::Index>(ranges[r].first + k)) = split.loss[c] / split.rows;
                 losses.rank_deficient_splits += fit.rank_deficient ? 1 : 0;
@@ -261,11 +264,12 @@ void Contest::finish_results() {
 
 }  // namespace
 
-Trial run_trial(const Study& study, const Survey& survey, const Sample& sample, const FoldPlan& plan, unsigned threads) {
+Trial run_trial(const Study& study, const Survey& survey, const Sample& sample, const FoldPlan& plan, unsigned threads,
+                const std::function<void(double)>& progress) {
     Contest contest(study, survey, sample, threads);
     contest.fit_all_rows();
     contest.fit_full_model();
-    contest.run_splits(plan);
+    contest.run_splits(plan, progress);
     return contest.take();
 }
 

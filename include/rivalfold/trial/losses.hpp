@@ -7,6 +7,7 @@
 
 #include <Eigen/Core>
 
+#include <functional>
 #include <memory>
 #include <string>
 #include <vector>
@@ -61,7 +62,9 @@ struct Trial {
 
 /// The contest: every contestant on every split. `threads` changes nothing but the time. Throws FaultError when an indicator does
 /// not vary among the training rows of a split. A theory that cannot be fitted is kept, marked as failed, with the reason.
-Trial run_trial(const Study& study, const Survey& survey, const Sample& sample, const FoldPlan& plan, unsigned threads);
+/// `progress`, if given, is told now and then which share (0 .. 1) of the splits is done.
+Trial run_trial(const Study& study, const Survey& survey, const Sample& sample, const FoldPlan& plan, unsigned threads,
+                const std::function<void(double)>& progress = {});
 
 /// Only the fits to all rows: what `check` needs for its advice.
 Trial fit_all_rows(const Study& study, const Survey& survey, const Sample& sample, unsigned threads);

@@ -1,0 +1,49 @@
+#include "cli/commands.hpp"
+#include "cli/terminal.hpp"
+#include "rivalfold/contest.hpp"
+#include "rivalfold/report/results_folder.hpp"
+#include "rivalfold/study/read_study.hpp"
+
+#include <CLI/CLI.hpp>
+#include <fmt/format.h>
+
+#include <memory>
+
+namespace rivalfold {
+namespace {
+
+struct RunOptions {
+    std::string study;
+    std::string folder;    ///< empty: the study's name with .results
+    unsigned threads = 0;  ///< 0: one per core
+};
+
+int run_run(const RunOptions& options) {
+    const Study study = read_study(options.study);
+    const std::string folder = options.folder.empty() ? default_results_folder(options.study) : options.folder;
+    check_results_folder(folder);  // before the work, not after it
+    Outcome outcome;
+    {
+        ProgressLine progress;
+        outcome = run_contest(study, {options.threads, [&](double share) { progress.show(share); }});
+    }
+    save_contest(outcome, folder);
+    print(stdout, write_tables(outcome, style_of(stdout)));
+    print(stderr, write_advice(outcome.advice, style_of(stderr)));
+    print(stderr, fmt::format("results: {}\n", folder));
+    return kDone;
+}
+
+}  // namespace
+
+void add_run(CLI::App& app, Chosen& chosen) {
+    auto options = std::make_shared<RunOptions>();
+    CLI::App* command = app.add_subcommand("run", "Run the contest: print the ranked table and verdict, write the results folder");
+    command->footer("Example: rivalfold run refits.yaml -o refits.results");
+    command->add_option("STUDY", options->study, "the study file (YAML)")->required();
+    command->add_option("-o,--output", options->folder, "the results folder (default: STUDY's name with .results)");
+    command->add_option("--threads", options->threads, "threads to use; changes only the time (default: one per core)")->check(CLI::Range(1U, 1024U));
+    command->callback([options, &chosen] { chosen = [options] { return run_run(*options); }; });
+}
+
+}  // namespace rivalfold

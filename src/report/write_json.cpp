@@ -1,0 +1,133 @@
+#include "rivalfold/report/writers.hpp"
+
+#include <nlohmann/json.hpp>
+
+#include <cmath>
+
+namespace rivalfold {
+namespace {
+
+using Json = nlohmann::ordered_json;
+
+/// Numbers that do not exist become null; the reason stands beside them.
+Json number(double value) { return std::isfinite(value) ? Json(value) : Json(nullptr); }
+
+Json heldout(const ContestantLosses& losses) {
+    if (losses.failed) return nullptr;
+    Json indicators = Json::array();
+    for (const IndicatorErrors& errors : losses.indicators) {
+        Json one = {{"name", errors.name}, {"rmse", number(errors.rmse)}, {"mae", number(errors.mae)}, {"mape", number(errors.mape)}, {"q2", number(errors.q2)}};
+        if (std::isnan(errors.mape)) one["reason"] = "mape: an actual value is 0";
+        indicators.push_back(std::move(one));
+    }
+    return {{"loss", number(losses.loss)}, {"rmse", number(losses.rmse)}, {"mae", number(losses.mae)}, {"q2", number(losses.q2)}, {"indicators", std::move(indicators)}};
+}
+
+Json equations(const TheoryReport& theory) {
+    Json list = Json::array();
+    for (const EquationReport& equation : theory.equations) {
+        Json terms = Json::array();
+        for (const TermReport& term : equation.terms) {
+            Json one = {{"term", term.term}, {"coefficient", number(term.coefficient)}, {"se", number(term.se)}, {"t", number(term.t)}, {"p", number(term.p)}, {"f2", number(term.f2)}};
+            if (!term.reason.empty()) one["reason"] = term.reason;
+            terms.push_back(std::move(one));
+        }
+        list.push_back({{"outcome", equation.outcome}, {"r2", number(equation.r2)}, {"terms", std::move(terms)}});
+    }
+    return list;
+}
+
+Json weights(const TheoryReport& theory) {
+    Json list = Json::array();
+    for (const ConstructWeights& construct : theory.weights) {
+        Json indicators = Json::array();
+        for (const IndicatorWeight& indicator : construct.indicators)
+            indicators.push_back({{"name", indicator.name}, {"weight", number(indicator.weight)}, {"loading", number(indicator.loading)}});
+        list.push_back({{"construct", construct.construct}, {"indicators", std::move(indicators)}});
+    }
+    return list;
+}
+
+Json fitted(const InSample& in) {
+    return {{"r2", number(in.r2)}, {"adjusted_r2", number(in.adjusted_r2)}, {"sse", number(in.sse)}, {"coefficients_count", in.coefficients},
+            {"f", number(in.f)}, {"f_df", {number(in.f_df1), number(in.f_df2)}}, {"f_p", number(in.f_p)}};
+}
+
+Json criteria(const Criteria& c) {
+    Json out = {{"aic", number(c.aic)}, {"aicc", number(c.aicc)}, {"bic", number(c.bic)}, {"hq", number(c.hq)}, {"gm", number(c.gm)}, {"bic_weight", number(c.bic_weight)}};
+    if (!c.reason.empty()) out["reason"] = c.reason;
+    return out;
+}
+
+Json paired_test(const PairedTest& test, double loss_b) {
+    Json out = {{"se", number(test.se)}, {"t", number(test.t)}, {"df", number(test.df)}, {"p", number(test.p)}, {"p_holm", number(test.p_holm)},
+                {"low", number(test.low)}, {"high", number(test.high)}, {"relative_low", number(test.low / loss_b)}, {"relative_high", number(test.high / loss_b)}};
+    if (!test.reason.empty()) out["reason"] = test.reason;
+    return out;
+}
+
+Json data(const Outcome& outcome) {
+    Json dropped = Json::array();
+    for (const Dropped& drop : outcome.survey.dropped) dropped.push_back({{"reason", drop.reason}, {"rows", drop.rows}});
+    return {{"file", outcome.study.data.file.text}, {"sha256", outcome.survey.sha256}, {"rows_read", outcome.survey.rows_read},
+            {"rows_used", outcome.survey.n()}, {"dropped", std::move(dropped)}};
+}
+
+Json theory(const Outcome& outcome, const TheoryReport& report) {
+    const ContestantLosses& losses = outcome.trial.contestants[report.contestant];
+    Json out = {{"name", losses.name}, {"claim", outcome.trial.theories[report.contestant]->blueprint().claim}, {"rank", report.rank > 0 ? Json(report.rank) : Json(nullptr)}};
+    if (losses.failed) out["failed"] = losses.reason;
+    out["heldout"] = heldout(losses);
+    out["fitted"] = fitted(report.fitted);
+    out["criteria"] = criteria(report.criteria);
+    out["equations"] = equations(report);
+    out["weights"] = weights(report);
+    out["verdict"] = report.verdict;
+    return out;
+}
+
+void emit(const Json& json, const Sink& sink) {
+    sink(json.dump(1, ' ', false, Json::error_handler_t::replace));
+    sink("\n");
+}
+
+}  // namespace
+
+void write_results_json(const Outcome& outcome, const Sink& sink) {
+    const Study& study = outcome.study;
+    const Trial& trial = outcome.trial;
+    Json json = {{"rivalfold", outcome.run.version}, {"schema", 1}, {"study", study.title}};
+    json["data"] = data(outcome);
+    json["trial"] = {{"folds", trial.folds}, {"repeats", trial.repeats}, {"seed", study.trial.folds_file ? Json(nullptr) : Json(study.trial.seed)},
+                     {"loss", word(study.trial.loss)}, {"mediators", word(study.trial.mediators)}, {"metric", word(study.metric)}};
+    if (study.trial.folds_file) json["trial"]["folds_file"] = study.trial.folds_file->text;
+    json["theories"] = Json::array();
+    for (const TheoryReport& report : outcome.verdict.theories) json["theories"].push_back(theory(outcome, report));
+    json["benchmarks"] = Json::array();
+    for (const ContestantLosses& losses : trial.contestants)
+        if (!losses.is_theory) json["benchmarks"].push_back({{"name", losses.name}, {"heldout", heldout(losses)}});
+    json["pairs"] = Json::array();
+    for (const PairReport& pair : outcome.verdict.pairs) {
+        const ContestantLosses& b = trial.contestants[pair.b];
+        json["pairs"].push_back({{"a", trial.contestants[pair.a].name}, {"b", b.name}, {"difference", number(pair.difference)}, {"relative", number(pair.relative)},
+                                 {"rows", paired_test(pair.rows, b.loss)}, {"corrected", paired_test(pair.corrected, b.loss)}, {"verdict", word(pair.outcome)}});
+    }
+    json["verdict"] = outcome.verdict.headline;
+    json["advice"] = outcome.advice;
+    json["caution"] = caution();
+    emit(json, sink);
+}
+
+void write_manifest_json(const Outcome& outcome, const Sink& sink) {
+    emit({{"rivalfold", outcome.run.version},
+          {"schema", 1},
+          {"study", {{"file", outcome.study.path}, {"sha256", outcome.run.study_sha256}}},
+          {"data", {{"file", outcome.study.data.file.text}, {"sha256", outcome.survey.sha256}}},
+          {"seed", outcome.study.trial.folds_file ? Json(nullptr) : Json(outcome.study.trial.seed)},
+          {"started", outcome.run.started},
+          {"seconds", outcome.run.seconds},
+          {"threads", outcome.run.threads}},
+         sink);
+}
+
+}  // namespace rivalfold

@@ -1,0 +1,179 @@
+#include "rivalfold/verdict/verdict.hpp"
+
+#include "rivalfold/verdict/distributions.hpp"
+#include "verdict/in_sample.hpp"
+
+#include <fmt/format.h>
+
+#include <algorithm>
+#include <cmath>
+#include <limits>
+
+namespace rivalfold {
+namespace {
+
+constexpr double kNaN = std::numeric_limits<double>::quiet_NaN();
+
+void rank_contestants(const Trial& trial, Verdict& verdict) {
+    for (std::size_t c = 0; c < trial.contestants.size(); ++c)
+        if (!trial.contestants[c].failed) verdict.order.push_back(c);
+    std::stable_sort(verdict.order.begin(), verdict.order.end(),
+                     [&](std::size_t a, std::size_t b) { return trial.contestants[a].loss < trial.contestants[b].loss; });
+    int rank = 0;
+    for (const std::size_t c : verdict.order)
+        if (trial.contestants[c].is_theory) verdict.theories[c].rank = ++rank;
+}
+
+PairReport compare(const Trial& trial, const Survey& survey, std::size_t a, std::size_t b, double level) {
+    const ContestantLosses& first = trial.contestants[a];
+    const ContestantLosses& second = trial.contestants[b];
+    PairReport pair;
+    pair.a = a;
+    pair.b = b;
+    pair.theories = first.is_theory && second.is_theory;
+    const Eigen::VectorXd d = first.row_loss - second.row_loss;
+    pair.difference = d.mean();
+    pair.relative = pair.difference / second.loss;
+    pair.rows = survey.clusters.empty() ? row_test(d, level) : cluster_test(d, survey.clusters, survey.cluster_names.size(), level);
+    pair.corrected = corrected_test(first.split_loss - second.split_loss, trial.folds, pair.difference, level);
+    pair.p = std::isnan(pair.rows.p) || std::isnan(pair.corrected.p) ? kNaN : std::max(pair.rows.p, pair.corrected.p);
+    pair.p_holm = kNaN;
+    pair.low = std::min(pair.rows.low, pair.corrected.low);
+    pair.high = std::max(pair.rows.high, pair.corrected.high);
+    return pair;
+}
+
+void adjust(std::vector<PairReport>& pairs) {
+    const auto adjust_one = [&](auto p_of, auto set) {
+        std::vector<double> p;
+        for (const PairReport& pair : pairs) p.push_back(pair.theories ? p_of(pair) : kNaN);
+        const std::vector<double> adjusted = holm(p);
+        for (std::size_t i = 0; i < pairs.size(); ++i) set(pairs[i], adjusted[i]);
+    };
+    adjust_one([](const PairReport& pair) { return pair.rows.p; }, [](PairReport& pair, double p) { pair.rows.p_holm = p; });
+    adjust_one([](const PairReport& pair) { return pair.corrected.p; }, [](PairReport& pair, double p) { pair.corrected.p_holm = p; });
+    adjust_one([](const PairReport& pair) { return pair.p; }, [](PairReport& pair, double p) { pair.p_holm = p; });
+}
+
+/// Two one-sided tests (Schuirmann 1987): the 1 - 2 level interval, the wider of the two tests', lies inside +-margin of the smaller loss.
+bool practically_equal(const Trial& trial, const PairReport& pair, const VerdictRules& rules) {
+    const double allowed = rules.margin * std::min(trial.contestants[pair.a].loss, trial.contestants[pair.b].loss);
+    double reach = 0;
+    for (const PairedTest* test : {&pair.rows, &pair.corrected})
+        if (test->se > 0) reach = std::max(reach, student_quantile(rules.level, test->df) * test->se);
+    return std::fabs(pair.difference) + reach <= allowed;
+}
+
+void decide(const Trial& trial, const VerdictRules& rules, PairReport& pair) {
+    const double p = pair.theories ? pair.p_holm : pair.p;
+    if (practically_equal(trial, pair, rules))
+        pair.outcome = PairOutcome::practically_equal;
+    else if (p < rules.level)
+        pair.outcome = pair.difference < 0 ? PairOutcome::first_better : PairOutcome::second_better;
+}
+
+/// The best-ranked theory, if it beats every rival with the unadjusted larger p (intersection-union test, Berger 1982).
+void name_winner(const Study& study, const Trial& trial, Verdict& verdict) {
+    std::vector<std::size_t> ranked;
+    for (const std::size_t c : verdict.order)
+        if (trial.contestants[c].is_theory) ranked.push_back(c);
+    if (ranked.empty()) {
+        verdict.headline = "No theory could be fitted in every split, so there is nothing to compare.";
+        return;
+    }
+    const std::string& best = trial.contestants[ranked.front()].name;
+    bool beats_all = ranked.size() > 1;
+    double largest = 0;
+    std::string unbeaten;
+    for (const PairReport& pair : verdict.pairs) {
+        if (!pair.theories || pair.a != ranked.front()) continue;
+        const bool beaten = pair.p < study.verdict.level && pair.difference < 0 && pair.outcome != PairOutcome::practically_equal;
+        if (beaten)
+            largest = std::max(largest, pair.p);
+        else
+            unbeaten += fmt::format("{}\"{}\"", unbeaten.empty() ? "" : ", ", trial.contestants[pair.b].name);
+        beats_all = beats_all && beaten;
+    }
+    if (ranked.size() == 1) {
+        verdict.headline = fmt::format("Only \"{}\" could be fitted in every split, so it has no rival.", best);
+    } else if (beats_all) {
+        verdict.winner = ranked.front();
+        verdict.headline = fmt::format("\"{}\" predicts held-out rows better than every rival (both tests, largest p = {:.3g}).", best, largest);
+    } else {
+        verdict.headline = fmt::format("No single winner: \"{}\" ranks first, but these data cannot tell it from {}.", best, unbeaten);
+    }
+}
+
+void word_theories(const Trial& trial, Verdict& verdict) {
+    for (std::size_t t = 0; t < verdict.theories.size(); ++t) {
+        TheoryReport& theory = verdict.theories[t];
+        if (trial.contestants[t].failed) {
+            theory.verdict = "failed " + trial.contestants[t].reason;
+            continue;
+        }
+        if (verdict.winner == t) {
+            theory.verdict = "predicts better than every rival";
+            continue;
+        }
+        if (theory.rank == 1) {
+            theory.verdict = "ranks first, without a clear lead";
+            continue;
+        }
+        for (const PairReport& pair : verdict.pairs) {
+            if (!pair.theories || pair.b != t || verdict.theories[pair.a].rank != 1) continue;
+            const std::string& best = trial.contestants[pair.a].name;
+            if (pair.outcome == PairOutcome::practically_equal)
+                theory.verdict = fmt::format("practically equal to \"{}\"", best);
+            else if (pair.outcome == PairOutcome::first_better || verdict.winner)
+                theory.verdict = fmt::format("predicts worse than \"{}\"", best);
+            else
+                theory.verdict = fmt::format("cannot be told from \"{}\"", best);
+        }
+    }
+}
+
+}  // namespace
+
+const char* word(PairOutcome outcome) {
+    switch (outcome) {
+        case PairOutcome::first_better: return "first predicts better";
+        case PairOutcome::second_better: return "second predicts better";
+        case PairOutcome::practically_equal: return "practically equal";
+        case PairOutcome::unresolved: return "unresolved";
+    }
+    return "";
+}
+
+Verdict reach_verdict(const Study& study, const Survey& survey, const Trial& trial) {
+    Verdict verdict;
+    verdict.theories.resize(trial.theories.size());
+    for (std::size_t t = 0; t < trial.theories.size(); ++t) {
+        verdict.theories[t].contestant = t;
+        if (trial.whole[t].failed) {
+            const double none = kNaN;
+            verdict.theories[t].fitted = {none, none, none, 0, none, none, none, none};
+            verdict.theories[t].criteria = {none, none, none, none, none, none, trial.whole[t].reason};
+        } else {
+            report_in_sample(survey, trial, t, verdict.theories[t]);
+        }
+    }
+    weigh_by_bic(verdict.theories);
+    rank_contestants(trial, verdict);
+    for (std::size_t i = 0; i < verdict.order.size(); ++i)
+        for (std::size_t j = i + 1; j < verdict.order.size(); ++j)
+            verdict.pairs.push_back(compare(trial, survey, verdict.order[i], verdict.order[j], study.verdict.level));
+    adjust(verdict.pairs);
+    for (PairReport& pair : verdict.pairs) decide(trial, study.verdict, pair);
+    const Eigen::VectorXd* first_weights = nullptr;
+    for (std::size_t t = 0; t < trial.theories.size(); ++t) {
+        if (trial.whole[t].failed) continue;
+        const Eigen::VectorXd& weights = trial.whole[t].fit.weights[static_cast<std::size_t>(trial.theories[t]->blueprint().target_block())];
+        if (!first_weights) first_weights = &weights;
+        if ((weights - *first_weights).cwiseAbs().maxCoeff() > 1e-8) verdict.several_targets = true;
+    }
+    name_winner(study, trial, verdict);
+    word_theories(trial, verdict);
+    return verdict;
+}
+
+}  // namespace rivalfold
