@@ -17,7 +17,7 @@ ctest --preset dev --no-label-summary
 doing "3 of 4: the same numbers from other programs (tests/reference/)"
 # Debian's own Python has the packages above; another one earlier on the path may not.
 if [ -x /usr/bin/python3 ]; then export PYTHON=/usr/bin/python3; fi
-for check in tests/reference/check_*.sh; do "$check"; done
+for check in tests/reference/check_*.sh tests/reference/rerun_*.sh; do "$check"; done
 tests/reference/live_check.sh build-dev/rivalfold
 
 doing "4 of 4: once more under the sanitizers (build-sanitize/)"
