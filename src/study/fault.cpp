@@ -115,7 +115,10 @@ std::string render(const Fault& fault) {
 std::string render(std::span<const Fault> faults, std::size_t most) {
     std::string text;
     const std::size_t n_shown = std::min(most, faults.size());
-    for (std::size_t k = 0; k < n_shown; ++k) text += (k > 0 ? "\n" : "") + render(faults[k]);
+    for (std::size_t k = 0; k < n_shown; ++k) {
+        if (k > 0) text += '\n';
+        text += render(faults[k]);
+    }
     const std::size_t rest = faults.size() - n_shown;
     if (rest > 0)
         text += fmt::format("{}and {} more {}", n_shown > 0 ? "\n" : "", rest, rest == 1 ? "error" : "errors");

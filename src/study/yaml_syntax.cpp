@@ -11,7 +11,7 @@ struct Wording {
 };
 
 // The library's messages that a study file can meet, in words that say what to do.
-constexpr Wording kWordings[] = {
+const Wording kWordings[] = {
     {YAML::ErrorMsg::TAB_IN_INDENTATION, "a tab indents this line; expected spaces"},
     {YAML::ErrorMsg::MAP_KEY, "a key cannot stand here; expected it on a line of its own"},
     {YAML::ErrorMsg::BLOCK_ENTRY, "a list item cannot stand here; expected the dash on a line of its own"},

@@ -10,8 +10,14 @@ using namespace rivalfold;
 
 namespace {
 
+// As shown, after a line break so that tests can hold it as a block.
+std::string block(const Fault& fault) {
+    std::string text = "\n";
+    return text += render(fault);
+}
+
 std::string shown_at(const std::string& line, std::size_t column) {
-    return "\n" + render(Fault{"study.yaml", {14, column}, {}, "wrong", {}, line}) + "\n";
+    return block(Fault{"study.yaml", {14, column}, {}, "wrong", {}, line}) + "\n";
 }
 
 }  // namespace
@@ -23,7 +29,7 @@ TEST_CASE("a fault shows place, message, line, caret and hint", "[fault]") {
                       "theory \"chain\" uses the construct \"skil\", which nothing defines",
                       "did you mean \"skill\"?",
                       "      delivery: [planning, skil]"};
-    CHECK("\n" + render(fault) == R"(
+    CHECK(block(fault) == R"(
 study.yaml:14:28: error: theory "chain" uses the construct "skil", which nothing defines
    14 |       delivery: [planning, skil]
       |                            ^
@@ -82,8 +88,7 @@ TEST_CASE("no control character of a file reaches the terminal", "[fault]") {
                       "hint\r",
                       "a\x1b[b\xFFz"};
     const std::string text = render(fault);
-    CHECK("\n" + text == R"(
-a\x1b[31m.yaml:1:5: error: found "\x07\x9b31m"
+    CHECK(text == R"(a\x1b[31m.yaml:1:5: error: found "\x07\x9b31m"
     1 | a\x1b[b\xffz
       |        ^
 hint\r)");

@@ -88,7 +88,7 @@ TEST_CASE("more than 200000 values are too many", "[hostile]") {
 
 TEST_CASE("many faults are bounded", "[hostile]") {
     std::string text = kStudy;
-    for (int k = 0; k < 50'000; ++k) text += "unknown" + std::to_string(k) + ": 1\n";
+    for (int k = 0; k < 50'000; ++k) text.append("unknown").append(std::to_string(k)).append(": 1\n");
     try {
         read_study_text(text, "study.yaml");
         FAIL("no fault");

@@ -189,8 +189,7 @@ TEST_CASE("a byte order mark and any line ends leave the places as they are", "[
     }
     const Study study = read_study_text("\xEF\xBB\xBF" + kStudy, "study.yaml");
     CHECK(study.source.size() == kStudy.size() + 3);
-    CHECK("\n" + render(study.fault_at({9, 9}, "no such target", "try again")) == R"(
-study.yaml:9:9: error: no such target
+    CHECK(render(study.fault_at({9, 9}, "no such target", "try again")) == R"(study.yaml:9:9: error: no such target
     9 | target: delivery
       |         ^
 try again)");
