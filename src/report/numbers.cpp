@@ -1,5 +1,7 @@
 #include "report/numbers.hpp"
 
+#include "study/characters.hpp"
+
 #include <fmt/format.h>
 
 #include <charconv>
@@ -41,19 +43,7 @@ std::string csv_field(std::string_view text) {
 }
 
 std::string plain(std::string_view text) {
-    std::string out;
-    for (std::size_t i = 0; i < text.size(); ++i) {
-        const auto byte = static_cast<unsigned char>(text[i]);
-        // C1 controls, which some terminals obey, are U+0080 .. U+009F: bytes C2 80 .. C2 9F.
-        const bool c1 = byte == 0xC2 && i + 1 < text.size() && static_cast<unsigned char>(text[i + 1]) < 0xA0;
-        if (byte < 0x20 || byte == 0x7F)
-            out += fmt::format("\\x{:02x}", byte);
-        else if (c1)
-            out += fmt::format("\\x{:02x}", static_cast<unsigned char>(text[++i]));
-        else
-            out += text[i];
-    }
-    return out;
+    return escape_controls(text);
 }
 
 std::string markdown_cell(std::string_view text) {

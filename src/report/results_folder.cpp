@@ -1,17 +1,22 @@
 #include "rivalfold/report/results_folder.hpp"
 
 #include "rivalfold/report/writers.hpp"
+#include "report/numbers.hpp"
 
 #include <fmt/format.h>
 
+#include <algorithm>
 #include <cerrno>
 #include <csignal>
 #include <cstdio>
 #include <cstring>
 #include <exception>
 #include <filesystem>
+#include <fstream>
 #include <memory>
+#include <string>
 #include <thread>
+#include <vector>
 
 #include <fcntl.h>
 #include <unistd.h>
@@ -39,10 +44,10 @@ void write_file(const fs::path& path, const Outcome& outcome, const ResultFile& 
         if (buffer.size() > (1U << 18)) flush();
     });
     flush();
-    if (std::fflush(out.get()) != 0 || fsync(fileno(out.get())) != 0) fail();
+    if (std::fflush(out.get()) != 0) fail();  // no fsync: a killed process loses nothing, and a power cut may
 }
 
-/// Folders `.<name>.rivalfold-<process>` whose process is gone.
+/// Folders `.<name>.rivalfold-<process>` whose process is gone, or that an earlier process with our number left.
 void remove_left_overs(const fs::path& parent, const std::string& name) {
     const std::string prefix = "." + name + std::string(kBeside);
     std::error_code ignored;
@@ -51,7 +56,8 @@ void remove_left_overs(const fs::path& parent, const std::string& name) {
         if (found.rfind(prefix, 0) != 0) continue;
         const std::string tail = found.substr(prefix.size());
         if (tail.empty() || tail.find_first_not_of("0123456789") != std::string::npos || tail.size() > 9) continue;
-        if (kill(static_cast<pid_t>(std::stol(tail)), 0) != 0 && errno == ESRCH) fs::remove_all(entry.path(), ignored);
+        const auto process = static_cast<pid_t>(std::stol(tail));
+        if (process == getpid() || (kill(process, 0) != 0 && errno == ESRCH)) fs::remove_all(entry.path(), ignored);
     }
 }
 
@@ -82,6 +88,24 @@ fs::path without_final_slash(const std::string& folder) {
     return path.has_filename() ? path : path.parent_path();
 }
 
+/// The first thing in a folder that is not of a results folder: the whole folder is replaced, so nothing else may be in it.
+std::string what_is_no_result(const fs::path& folder) {
+    std::vector<std::string> found;
+    std::error_code ignored;
+    for (const fs::directory_entry& entry : fs::directory_iterator(folder, ignored)) {
+        const std::string name = entry.path().filename().string();
+        const auto& files = result_files();
+        const bool known = std::any_of(files.begin(), files.end(), [&](const ResultFile& file) { return name == file.name; });
+        if (!known || !fs::is_regular_file(entry.symlink_status(ignored))) found.push_back(name);
+    }
+    if (!found.empty()) return fmt::format("\"{}\"", plain(*std::min_element(found.begin(), found.end())));
+    if (fs::is_empty(folder, ignored)) return {};
+    std::ifstream manifest(folder / "manifest.json");
+    std::string opening(64, '\0');
+    manifest.read(opening.data(), static_cast<std::streamsize>(opening.size()));
+    return opening.find("\"rivalfold\"") == std::string::npos ? "files without a manifest.json of rivalfold" : "";
+}
+
 }  // namespace
 
 std::string default_results_folder(const std::string& study_path) {
@@ -99,8 +123,8 @@ void check_results_folder(const std::string& folder) {
     if (!fs::exists(fs::symlink_status(place, error))) return;
     if (fs::is_symlink(fs::symlink_status(place, error))) throw SaveError(fmt::format("{} is a symbolic link; name the folder that it points to", folder));
     if (!fs::is_directory(place, error)) throw SaveError(fmt::format("{} is a file; name a folder with -o", folder));
-    if (!fs::is_empty(place, error) && !fs::exists(place / "manifest.json", error))
-        throw SaveError(fmt::format("{} holds other files and no results of an earlier run; it was left alone. Name another folder with -o", folder));
+    const std::string stranger = what_is_no_result(place);
+    if (!stranger.empty()) throw SaveError(fmt::format("{} holds {}, which no earlier run wrote; the folder was left alone. Name another folder with -o", folder, stranger));
 }
 
 void save_results(const Outcome& outcome, const std::string& folder) {

@@ -1,46 +1,68 @@
 #include "report/text_table.hpp"
 
+#include "study/characters.hpp"
+
 #include <algorithm>
 
 namespace rivalfold {
 namespace {
 
-bool starts_character(char c) { return (static_cast<unsigned char>(c) & 0xC0) != 0x80; }
-
 std::string spaces(std::size_t count) { return std::string(count, ' '); }
+
+/// Bytes of the longest beginning that is no wider than `width`; with `some`, at least one character.
+std::size_t bytes_within(std::string_view text, std::size_t width, bool some) {
+    std::size_t used = 0, at = 0;
+    while (at < text.size()) {
+        const Character character = character_at(text, at);
+        used += display_width(character.code);
+        if (used > width && !(some && at == 0)) break;
+        at += character.size;
+    }
+    return at;
+}
 
 }  // namespace
 
-std::size_t display_width(std::string_view text) { return static_cast<std::size_t>(std::count_if(text.begin(), text.end(), starts_character)); }
+std::size_t display_width(std::string_view text) {
+    std::size_t width = 0;
+    for (const Character& character : characters(text)) width += display_width(character.code);
+    return width;
+}
 
 std::string cut_to(std::string_view text, std::size_t width) {
     if (display_width(text) <= width) return std::string(text);
-    std::size_t characters = 0, at = 0;
-    for (; at < text.size(); ++at) {
-        if (!starts_character(text[at])) continue;
-        if (characters + 1 >= width) break;
-        ++characters;
-    }
-    return std::string(text.substr(0, at)) + "…";
+    return std::string(text.substr(0, bytes_within(text, width > 0 ? width - 1 : 0, false))) + "…";
 }
 
 std::string wrap(std::string_view text, std::size_t width, std::size_t indent) {
     std::string out;
     std::size_t used = 0;
+    bool line_begins = true;
+    const auto new_line = [&] {
+        out += "\n" + spaces(indent);
+        used = indent;
+        line_begins = true;
+    };
     for (std::size_t at = 0; at < text.size();) {
         const std::size_t stop = std::min(text.find(' ', at), text.size());
-        const std::string_view word = text.substr(at, stop - at);
-        const std::size_t needed = display_width(word);
-        if (used > indent && used + 1 + needed > width) {
-            out += "\n" + spaces(indent);
-            used = indent;
-        } else if (used > 0 && !out.empty() && out.back() != ' ') {
+        std::string_view word = text.substr(at, stop - at);
+        at = stop + 1;
+        if (word.empty()) continue;
+        if (!line_begins && used + 1 + display_width(word) > width) new_line();
+        if (!line_begins) {
             out += ' ';
             ++used;
         }
+        while (used + display_width(word) > width) {  // a word longer than a line, e.g. a name without spaces
+            const std::size_t part = bytes_within(word, width > used ? width - used : 0, true);
+            if (part == word.size()) break;
+            out += word.substr(0, part);
+            word.remove_prefix(part);
+            new_line();
+        }
         out += word;
-        used += needed;
-        at = stop + 1;
+        used += display_width(word);
+        line_begins = false;
     }
     return out;
 }

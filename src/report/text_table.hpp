@@ -8,11 +8,11 @@
 
 namespace rivalfold {
 
-/// Characters that a text takes on a terminal (code points of UTF-8).
+/// Columns that a UTF-8 text takes on a terminal: 2 for an East Asian wide character, 0 for a combining mark.
 std::size_t display_width(std::string_view text);
 /// The text cut to a width, with an ellipsis where something was cut.
 std::string cut_to(std::string_view text, std::size_t width);
-/// Words of `text` in lines of at most `width`, each after the first indented by `indent` spaces.
+/// Words of `text` in lines of at most `width`, each after the first indented by `indent` spaces; a longer word is broken.
 std::string wrap(std::string_view text, std::size_t width, std::size_t indent);
 
 class TextTable {

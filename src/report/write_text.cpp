@@ -123,14 +123,14 @@ std::string write_advice(const std::vector<std::string>& advice, const TerminalS
 std::string write_plan(const Outcome& outcome, const TerminalStyle& style) {
     const Study& study = outcome.study;
     const auto width = static_cast<std::size_t>(style.width);
-    std::string out = bold(plain(study.title), style) + "\n" + fmt::format("data: {}, {}\n", plain(study.data.file.text), rows_in_words(outcome.survey));
+    std::string out = bold(plain(study.title), style) + "\n" + wrap(fmt::format("data: {}, {}", plain(study.data.file.text), rows_in_words(outcome.survey)), width, 2) + "\n";
     for (const Dropped& dropped : outcome.survey.dropped) {
         std::string rows;
         for (std::size_t i = 0; i < std::min<std::size_t>(8, dropped.rows.size()); ++i) rows += fmt::format("{}{}", i > 0 ? ", " : "", dropped.rows[i]);
         if (dropped.rows.size() > 8) rows += ", ...";
-        out += wrap(fmt::format("  left out: {} row{}, {} (row{} {})", dropped.rows.size(), dropped.rows.size() == 1 ? "" : "s", plain(dropped.reason), dropped.rows.size() == 1 ? "" : "s", rows), width, 4) + "\n";
+        out += "  " + wrap(fmt::format("left out: {} row{}, {} (row{} {})", dropped.rows.size(), dropped.rows.size() == 1 ? "" : "s", plain(dropped.reason), dropped.rows.size() == 1 ? "" : "s", rows), width - 2, 4) + "\n";
     }
-    out += fmt::format("splits: {}\n  trains on at least {} rows a split\n", splits_in_words(outcome), outcome.plan.smallest_training());
+    out += wrap("splits: " + splits_in_words(outcome), width, 2) + fmt::format("\n  trains on at least {} rows a split\n", outcome.plan.smallest_training());
     out += "\n" + bold("Constructs", style) + "\n";
     TextTable constructs({{"construct", true}, {"as measured by", true}, {"indicators", false}, {"weights", true}, {"alpha", false}});
     for (const Measurement& m : outcome.survey.measurements) {

@@ -86,6 +86,13 @@ void add_scaled(double* __restrict out, const double* __restrict x, std::ptrdiff
 }
 
 RIVALFOLD_TWO_CODES
+void add_scaled_4(double* __restrict out, const double* const x[4], std::ptrdiff_t n, const double factor[4]) {
+    const double *__restrict a = x[0], *__restrict b = x[1], *__restrict c = x[2], *__restrict d = x[3];
+    const double fa = factor[0], fb = factor[1], fc = factor[2], fd = factor[3];
+    for (std::ptrdiff_t i = 0; i < n; ++i) out[i] = out[i] + fa * a[i] + fb * b[i] + fc * c[i] + fd * d[i];
+}
+
+RIVALFOLD_TWO_CODES
 void multiply(double* __restrict out, const double* __restrict x, std::ptrdiff_t n) {
     for (std::ptrdiff_t i = 0; i < n; ++i) out[i] *= x[i];
 }

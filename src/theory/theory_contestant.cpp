@@ -249,16 +249,31 @@ void TheoryContestant::finish(FitScratch& scratch, Fit& fit) const {
     }
 }
 
+/// out += sum over `columns` of factor(h) x column, gaps filled with the training mean.
+template <class Factor>
+void TheoryContestant::add_columns(const RowBlock& rows, const std::vector<int>& columns, const Eigen::VectorXd& gap_means, Factor factor, double* out) const {
+    std::size_t h = 0;
+    for (; h + 4 <= columns.size(); h += 4) {
+        const double* x[4];
+        double factors[4];
+        for (std::size_t l = 0; l < 4; ++l) {
+            x[l] = rows.values + columns[h + l] * rows.stride;
+            factors[l] = factor(h + l);
+        }
+        add_scaled_4(out, x, rows.rows, factors);
+    }
+    for (; h < columns.size(); ++h) add_scaled(out, rows.values + columns[h] * rows.stride, rows.rows, factor(h));
+    if (!rows.gaps) return;
+    for (h = 0; h < columns.size(); ++h)
+        if (const int gap = sample_.gap_of[static_cast<std::size_t>(columns[h])]; gap >= 0)
+            add_scaled(out, rows.gaps + gap * rows.stride, rows.rows, factor(h) * gap_means(columns[h]));
+}
+
 void TheoryContestant::form_score(const Fit& fit, int block, const RowBlock& rows, double* out) const {
     const ScoreMap& score = fit.scores[static_cast<std::size_t>(block)];
     const std::vector<int>& columns = plan_.blocks[static_cast<std::size_t>(block)].columns;
     fill(out, rows.rows, score.constant);
-    for (std::size_t h = 0; h < columns.size(); ++h) {
-        const double coefficient = score.coefficients(static_cast<Eigen::Index>(h));
-        add_scaled(out, rows.values + columns[h] * rows.stride, rows.rows, coefficient);
-        const int gap = sample_.gap_of[static_cast<std::size_t>(columns[h])];
-        if (gap >= 0) add_scaled(out, rows.gaps + gap * rows.stride, rows.rows, coefficient * fit.gap_means(columns[h]));
-    }
+    add_columns(rows, columns, fit.gap_means, [&](std::size_t h) { return score.coefficients(static_cast<Eigen::Index>(h)); }, out);
 }
 
 void TheoryContestant::form_equation_column(const Fit&, const DesignColumn& column, std::ptrdiff_t rows, const Eigen::MatrixXd& scores,
@@ -297,11 +312,7 @@ void TheoryContestant::predict(const Fit& fit, const RowBlock& rows, RowScratch&
     double* predicted = scratch.column.col(0).data();
     if (direct_) {
         fill(predicted, n, fit.direct_constant);
-        for (const int column : direct_columns_) {
-            add_scaled(predicted, rows.values + column * rows.stride, n, fit.direct(column));
-            const int gap = sample_.gap_of[static_cast<std::size_t>(column)];
-            if (gap >= 0) add_scaled(predicted, rows.gaps + gap * rows.stride, n, fit.direct(column) * fit.gap_means(column));
-        }
+        add_columns(rows, direct_columns_, fit.gap_means, [&](std::size_t h) { return fit.direct(direct_columns_[h]); }, predicted);
     } else {
         make_room(scratch.scores, n, static_cast<Eigen::Index>(plan_.blocks.size()));
         double* term = scratch.column.col(1).data();

@@ -13,6 +13,9 @@ struct SplitEngine::Room {
     std::vector<std::ptrdiff_t> begin;      // per fold of the range: first block position
     std::vector<std::ptrdiff_t> end;        // per fold: one past its last row
     std::vector<std::ptrdiff_t> cursor;
+    std::vector<std::vector<std::uint32_t>> held_out;  // per fold of the range: its rows within the block
+    std::vector<std::int32_t> offset;       // of each block position, from the block's first sample row
+    std::vector<std::size_t> padding;       // block positions that hold no row
     std::ptrdiff_t filled = 0;              // block positions in use, a multiple of kLanes
     Eigen::MatrixXd design;
     Eigen::MatrixXd predicted;
@@ -25,22 +28,29 @@ struct SplitEngine::Room {
     RowBlock rows(const Sample& sample, std::ptrdiff_t first, std::ptrdiff_t count) const {
         return {block.data() + first, sample.gappy.empty() ? nullptr : block.col(sample.n_columns + 1).data() + first, block.rows(), count};
     }
-    void make_design_room(int columns) {
-        if (design.rows() < filled || design.cols() < columns)
-            design.resize(std::max<Eigen::Index>(design.rows(), filled), std::max<Eigen::Index>(design.cols(), columns));
+    double* make_design_room(std::ptrdiff_t rows, int columns) {
+        if (design.rows() < rows || design.cols() < columns)
+            design.resize(std::max<Eigen::Index>(design.rows(), rows), std::max<Eigen::Index>(design.cols(), columns));
+        return design.data();
     }
-    /// Appends the ones to `columns` design columns and adds their cross-products, without block rows first .. last - 1 and padding.
-    void add_design(const Sample& sample, int columns, std::ptrdiff_t first, std::ptrdiff_t last, Eigen::MatrixXd& gram) {
-        design.col(columns).head(filled) = block.col(sample.n_columns).head(filled);
+    /// Appends ones to `columns` design columns of `count` rows and adds their cross-products, without the rows in `out`.
+    void add_design(std::ptrdiff_t count, int columns, std::span<const std::uint32_t> out, Eigen::MatrixXd& gram) {
+        fill(design.col(columns).data(), count, 1);
+        const std::ptrdiff_t whole = padded(count);
         for (int c = 0; c <= columns; ++c) {
             double* column = design.col(c).data();
-            std::fill(column + first, column + last, 0.0);
-            for (std::ptrdiff_t i = filled - 1; i >= 0 && row[static_cast<std::size_t>(i)] < 0; --i) column[i] = 0;
+            for (const std::uint32_t row : out) column[row] = 0;
+            for (std::ptrdiff_t i = count; i < whole; ++i) column[i] = 0;
         }
-        add_gram(design.data(), design.rows(), filled, columns + 1, gram.data(), gram.rows());
+        add_gram(design.data(), design.rows(), whole, columns + 1, gram.data(), gram.rows());
     }
     std::vector<const Contestant*> fit_scratch_for;
 };
+
+/// Consecutive rows straight from the sample.
+RowBlock SplitEngine::rows_of(Eigen::Index first, std::ptrdiff_t count) const {
+    return {sample_.values.data() + first, sample_.gappy.empty() ? nullptr : sample_.gaps.data() + first, sample_.n, count};
+}
 
 SplitEngine::SplitEngine(const Sample& sample, WorkerPool& pool)
     : sample_(sample), pool_(pool), segment_rows_(std::max<Eigen::Index>(32 * kBlockRows, ((sample.n + 15) / 16 + kBlockRows - 1) / kBlockRows * kBlockRows)) {
@@ -84,26 +94,31 @@ void SplitEngine::gather(const FoldRange& range, Eigen::Index first, Eigen::Inde
     if (room.block.rows() < room.filled || room.block.cols() < width) room.block.resize(std::max<Eigen::Index>(room.filled, room.block.rows()), width);
     room.row.assign(static_cast<std::size_t>(room.filled), -1);
     for (Eigen::Index i = 0; i < rows; ++i) room.row[static_cast<std::size_t>(room.cursor[bucket(fold_of[i])]++)] = first + i;
-    const auto copy = [&](const double* from, double* to) {
-        for (std::ptrdiff_t i = 0; i < room.filled; ++i) {
-            const Eigen::Index row = room.row[static_cast<std::size_t>(i)];
-            to[i] = row < 0 ? 0 : from[row];
-        }
+    // Padding reads the block's first row and is overwritten with zeros after: no branch in the copying loop.
+    room.offset.resize(static_cast<std::size_t>(room.filled));
+    room.padding.clear();
+    for (std::size_t i = 0; i < room.row.size(); ++i) {
+        room.offset[i] = room.row[i] < 0 ? 0 : static_cast<std::int32_t>(room.row[i] - first);
+        if (room.row[i] < 0) room.padding.push_back(i);
+    }
+    const auto copy = [&](const double* column, double* to) {
+        const double* from = column + first;
+        const std::int32_t* offset = room.offset.data();
+        for (std::ptrdiff_t i = 0; i < room.filled; ++i) to[i] = from[offset[i]];
+        for (const std::size_t i : room.padding) to[i] = 0;
     };
     for (Eigen::Index h = 0; h < sample_.n_columns; ++h) copy(sample_.values.col(h).data(), room.block.col(h).data());
     double* ones = room.block.col(sample_.n_columns).data();
-    for (std::ptrdiff_t i = 0; i < room.filled; ++i) ones[i] = room.row[static_cast<std::size_t>(i)] < 0 ? 0 : 1;
+    fill(ones, room.filled, 1);
+    for (const std::size_t i : room.padding) ones[i] = 0;
     for (Eigen::Index g = 0; g < gappy; ++g) copy(sample_.gaps.col(g).data(), room.block.col(sample_.n_columns + 1 + g).data());
 }
 
 template <class Use>
-void SplitEngine::sweep(const FoldRange& range, std::size_t segment, bool pad, Room& room, Use use) {
+void SplitEngine::for_each_block(std::size_t segment, Use use) const {
     const Eigen::Index start = static_cast<Eigen::Index>(segment) * segment_rows_;
     const Eigen::Index stop = std::min(sample_.n, start + segment_rows_);
-    for (Eigen::Index first = start; first < stop; first += kBlockRows) {
-        gather(range, first, std::min<Eigen::Index>(kBlockRows, stop - first), pad, room);
-        use();
-    }
+    for (Eigen::Index first = start; first < stop; first += kBlockRows) use(first, std::min<Eigen::Index>(kBlockRows, stop - first));
 }
 
 std::vector<std::vector<Gram>> SplitEngine::fold_grams(const std::vector<FoldRange>& ranges) {
@@ -115,7 +130,8 @@ std::vector<std::vector<Gram>> SplitEngine::fold_grams(const std::vector<FoldRan
         Room& mine = room(worker, nullptr);
         std::vector<Gram>& grams = partial[number];
         grams.assign(range.folds(), Gram::Zero(size, size));
-        sweep(range, number % segments, true, mine, [&] {
+        for_each_block(number % segments, [&](Eigen::Index first, std::ptrdiff_t count) {
+            gather(range, first, count, true, mine);
             // Turn gaps into observed masks: the Gram counts observed cells.
             for (int g = 0; g < static_cast<int>(sample_.gappy.size()); ++g)
                 for (std::ptrdiff_t i = 0; i < mine.filled; ++i)
@@ -183,12 +199,13 @@ void SplitEngine::fit_designs(const std::vector<FoldRange>& ranges, const std::v
     for (std::size_t c = 0; c < contestants.size(); ++c)
         for (int d = 0; d < contestants[c]->n_designs(); ++d) jobs.push_back({c, d});
     if (jobs.empty()) return;
-    constexpr std::uint32_t kFoldsPerTask = 8;
+    // Small samples need many tasks, large ones long sweeps over blocks in cache.
+    const std::uint32_t folds_per_task = n_segments() > 1 ? 64 : 8;
     std::vector<FoldRange> parts;
     std::vector<std::pair<std::size_t, std::size_t>> origin;  // range, first fold within it
     for (std::size_t r = 0; r < ranges.size(); ++r)
-        for (std::uint32_t first = ranges[r].first; first < ranges[r].last; first += kFoldsPerTask) {
-            parts.push_back({ranges[r].fold_of, first, std::min(ranges[r].last, first + kFoldsPerTask), ranges[r].repeat});
+        for (std::uint32_t first = ranges[r].first; first < ranges[r].last; first += folds_per_task) {
+            parts.push_back({ranges[r].fold_of, first, std::min(ranges[r].last, first + folds_per_task), ranges[r].repeat});
             origin.emplace_back(r, first - ranges[r].first);
         }
     const std::size_t segments = n_segments();
@@ -203,16 +220,22 @@ void SplitEngine::fit_designs(const std::vector<FoldRange>& ranges, const std::v
             const int size = contestants[job.contestant]->design_columns(job.design) + 1;
             grams[g].setZero(size, size);
         }
-        sweep(parts[part], number % segments, false, mine, [&] {
-            const RowBlock rows = mine.rows(sample_, 0, mine.filled);
+        for_each_block(number % segments, [&](Eigen::Index first, std::ptrdiff_t count) {
+            const RowBlock rows = rows_of(first, count);
+            mine.held_out.resize(parts[part].folds());
+            for (auto& rows_out : mine.held_out) rows_out.clear();
+            for (std::ptrdiff_t i = 0; i < count; ++i) {
+                const std::uint32_t fold = parts[part].fold_of[static_cast<std::size_t>(first + i)];
+                if (fold >= parts[part].first && fold < parts[part].last) mine.held_out[fold - parts[part].first].push_back(static_cast<std::uint32_t>(i));
+            }
             for (std::size_t k = 0; k < parts[part].folds(); ++k)
                 for (std::size_t j = 0; j < jobs.size(); ++j) {
                     const Fit& fit = out[origin[part].first][origin[part].second + k].fits[jobs[j].contestant];
                     if (fit.status != FitStatus::fitted) continue;
                     const int columns = contestants[jobs[j].contestant]->design_columns(jobs[j].design);
-                    mine.make_design_room(columns + 1);
-                    contestants[jobs[j].contestant]->form_design(jobs[j].design, fit, rows, mine.scratch, mine.design.data(), mine.design.rows());
-                    mine.add_design(sample_, columns, mine.begin[k], mine.end[k], grams[k * jobs.size() + j]);
+                    double* design = mine.make_design_room(padded(count), columns + 1);
+                    contestants[jobs[j].contestant]->form_design(jobs[j].design, fit, rows, mine.scratch, design, mine.design.rows());
+                    mine.add_design(count, columns, mine.held_out[k], grams[k * jobs.size() + j]);
                 }
         });
     });
@@ -241,17 +264,14 @@ SplitFits SplitEngine::fit_whole(const Gram& whole, const std::vector<const Cont
 }
 
 Eigen::MatrixXd SplitEngine::gram_of(int n_columns, const FormColumns& form) {
-    const std::vector<std::uint32_t> one_fold(static_cast<std::size_t>(sample_.n), 0);
-    const FoldRange all{one_fold, 0, 1, 0};
     std::vector<Eigen::MatrixXd> partial(n_segments());
     pool_.run(partial.size(), [&](std::size_t segment, unsigned worker) {
         Room& mine = room(worker, nullptr);
         partial[segment].setZero(n_columns + 1, n_columns + 1);
-        sweep(all, segment, false, mine, [&] {
-            const RowBlock rows = mine.rows(sample_, 0, mine.filled);
-            mine.make_design_room(n_columns + 1);
-            form(rows, mine.scratch, mine.design.data(), mine.design.rows());
-            mine.add_design(sample_, n_columns, 0, 0, partial[segment]);
+        for_each_block(segment, [&](Eigen::Index first, std::ptrdiff_t count) {
+            double* design = mine.make_design_room(padded(count), n_columns + 1);
+            form(rows_of(first, count), mine.scratch, design, mine.design.rows());
+            mine.add_design(count, n_columns, {}, partial[segment]);
         });
     });
     for (std::size_t s = 1; s < partial.size(); ++s) partial.front() += partial[s];
@@ -267,7 +287,8 @@ void SplitEngine::predict_segment(const FoldRange& range, std::size_t segment, c
         errors.loss.assign(contestants.size(), 0);
         errors.sums.assign(contestants.size(), std::vector<ErrorSums>(static_cast<std::size_t>(q)));
     }
-    sweep(range, segment, false, mine, [&] {
+    for_each_block(segment, [&](Eigen::Index first, std::ptrdiff_t count) {
+        gather(range, first, count, false, mine);
         const std::ptrdiff_t capacity = std::max<std::ptrdiff_t>(mine.filled, kBlockRows);
         if (mine.predicted.rows() < capacity || mine.predicted.cols() < q) {
             mine.predicted.resize(capacity, q);

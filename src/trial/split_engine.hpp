@@ -71,8 +71,10 @@ private:
     struct Room;  // one thread's buffers
 
     std::size_t n_segments() const { return static_cast<std::size_t>((sample_.n + segment_rows_ - 1) / segment_rows_); }
+    /// Calls use(first row, rows) for the blocks of a segment in order.
     template <class Use>
-    void sweep(const FoldRange& range, std::size_t segment, bool pad, Room& room, Use use);
+    void for_each_block(std::size_t segment, Use use) const;
+    RowBlock rows_of(Eigen::Index first, std::ptrdiff_t count) const;
     void gather(const FoldRange& range, Eigen::Index first, Eigen::Index rows, bool pad, Room& room) const;
     void fit_designs(const std::vector<FoldRange>& ranges, const std::vector<const Contestant*>& contestants,
                      std::vector<std::vector<SplitFits>>& out);

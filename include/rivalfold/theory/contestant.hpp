@@ -91,6 +91,8 @@ private:
     void solve_linear(std::size_t equation, double n, Fit&) const;
     void accept(std::size_t equation, Fit&) const;
     void compose_direct(Fit&) const;
+    template <class Factor>
+    void add_columns(const RowBlock&, const std::vector<int>& columns, const Eigen::VectorXd& gap_means, Factor factor, double* out) const;
     void form_equation_column(const Fit&, const DesignColumn&, std::ptrdiff_t rows, const Eigen::MatrixXd& scores, double* out) const;
 
     const Sample& sample_;

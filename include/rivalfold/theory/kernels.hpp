@@ -20,6 +20,8 @@ void add_gram(const double* x, std::ptrdiff_t stride, std::ptrdiff_t rows, std::
 void fill(double* out, std::ptrdiff_t n, double value);
 /// out[i] += factor * x[i]
 void add_scaled(double* out, const double* x, std::ptrdiff_t n, double factor);
+/// The same for four columns in one pass, added in their order: the bits of four calls of add_scaled.
+void add_scaled_4(double* out, const double* const x[4], std::ptrdiff_t n, const double factor[4]);
 /// out[i] *= x[i]
 void multiply(double* out, const double* x, std::ptrdiff_t n);
 /// out[i] = the smaller (larger) of out[i] and x[i]
