@@ -25,9 +25,9 @@ int run_check(const CheckOptions& options) {
 
 void add_check(CLI::App& app, Chosen& chosen) {
     auto options = std::make_shared<CheckOptions>();
-    CLI::App* command = app.add_subcommand("check", "Read study and data, print what would run and all advice; write nothing");
+    CLI::App* command = app.add_subcommand("check", "Print what would run, and all advice; write nothing");
     command->footer("Example: rivalfold check refits.yaml");
-    command->add_option("STUDY", options->study, "the study file (YAML)")->required();
+    command->add_option("STUDY", options->study, "the study file (YAML)")->type_name("FILE")->required();
     command->callback([options, &chosen] { chosen = [options] { return run_check(*options); }; });
 }
 

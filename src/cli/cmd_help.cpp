@@ -29,12 +29,11 @@ constexpr std::array<Topic, 6> kTopics{{{"study", help_study, "every key of the 
                                         {"tests", help_tests, "the paired tests, the verdict, and when they fail"},
                                         {"outputs", help_outputs, "the results folder and exit statuses"}}};
 
-int run_help(const HelpOptions& options, const CLI::App& app) {
+int run_help(const HelpOptions& options) {
     if (options.topic.empty()) {
-        print(stdout, app.help());
-        std::string list = "\nTopics of rivalfold help TOPIC:\n";
+        std::string list = "Topics of rivalfold help TOPIC:\n";
         for (const Topic& topic : kTopics) list += fmt::format("  {:<10}{}\n", topic.name, topic.purpose);
-        print(stdout, list);
+        print(stdout, list + "\nThe commands: rivalfold --help, and rivalfold COMMAND --help\n");
         return kDone;
     }
     std::vector<std::string> names;
@@ -58,8 +57,8 @@ void add_help(CLI::App& app, Chosen& chosen) {
     auto options = std::make_shared<HelpOptions>();
     CLI::App* command = app.add_subcommand("help", "Explain a topic, formulas with their published sources");
     command->footer("Topics: study, terms, losses, criteria, tests, outputs\nExample: rivalfold help tests");
-    command->add_option("TOPIC", options->topic, "the topic");
-    command->callback([options, &chosen, &app] { chosen = [options, &app] { return run_help(*options, app); }; });
+    command->add_option("TOPIC", options->topic, "the topic")->type_name("");
+    command->callback([options, &chosen] { chosen = [options] { return run_help(*options); }; });
 }
 
 }  // namespace rivalfold

@@ -7,7 +7,10 @@
 #include <CLI/CLI.hpp>
 #include <fmt/format.h>
 
+#include <charconv>
 #include <memory>
+#include <string>
+#include <system_error>
 
 namespace rivalfold {
 namespace {
@@ -17,6 +20,13 @@ struct RunOptions {
     std::string folder;    ///< empty: the study's name with .results
     unsigned threads = 0;  ///< 0: one per core
 };
+
+std::string fault_of_threads(const std::string& text) {
+    unsigned threads = 0;
+    const auto [end, error] = std::from_chars(text.data(), text.data() + text.size(), threads);
+    if (error == std::errc() && end == text.data() + text.size() && threads >= 1 && threads <= 1024) return {};
+    return fmt::format("expected a whole number from 1 to 1024, found \"{}\"", text);
+}
 
 int run_run(const RunOptions& options) {
     const Study study = read_study(options.study);
@@ -38,11 +48,11 @@ int run_run(const RunOptions& options) {
 
 void add_run(CLI::App& app, Chosen& chosen) {
     auto options = std::make_shared<RunOptions>();
-    CLI::App* command = app.add_subcommand("run", "Run the contest: print the ranked table and verdict, write the results folder");
+    CLI::App* command = app.add_subcommand("run", "Run the contest: print ranking and verdict, write results");
     command->footer("Example: rivalfold run refits.yaml -o refits.results");
-    command->add_option("STUDY", options->study, "the study file (YAML)")->required();
-    command->add_option("-o,--output", options->folder, "the results folder (default: STUDY's name with .results)");
-    command->add_option("--threads", options->threads, "threads to use; changes only the time (default: one per core)")->check(CLI::Range(1U, 1024U));
+    command->add_option("STUDY", options->study, "the study file (YAML)")->type_name("FILE")->required();
+    command->add_option("-o,--output", options->folder, "results folder (default: STUDY's name with .results)")->type_name("DIR");
+    command->add_option("--threads", options->threads, "threads; change only the time (default: one per core)")->type_name("N")->check(fault_of_threads);
     command->callback([options, &chosen] { chosen = [options] { return run_run(*options); }; });
 }
 
