@@ -55,6 +55,8 @@ struct Survey {
     std::vector<Measurement> measurements;
     std::vector<int> clusters;         ///< per used row, 0 .. n_clusters - 1; empty without `cluster`
     std::vector<std::string> cluster_names;
+    std::vector<int> segments;         ///< per used row, an index into segment_names; empty without `segment`
+    std::vector<std::string> segment_names;  ///< `kind: simple`, or with cuts `complexity <= 4`, `4 < complexity <= 6`, `complexity > 6`
     std::vector<std::string> advice;   ///< e.g. a construct that no theory uses
     std::string sha256;                ///< of the data file, lower-case hexadecimal
 
@@ -71,6 +73,10 @@ Survey read_survey(const Study& study);
 
 /// The same from a table in memory, for library users; the table must hold the columns that survey_columns() names.
 Survey build_survey(const Study& study, const Table& table);
+
+/// The rows of one segment as a survey of its own: clusters renumbered, levels that do not occur removed, rows_read as in the whole.
+/// Throws FaultError naming the segment and the column where a used indicator does not vary within it or a category has one level.
+Survey survey_of_segment(const Study& study, const Survey& whole, std::size_t segment);
 
 /// Which columns of a file with this header the study needs. Throws FaultError for names that match nothing.
 ColumnChoice survey_columns(const Study& study, const std::vector<std::string>& header);

@@ -74,6 +74,12 @@ struct Condition {
     std::vector<std::string> values;
 };
 
+/// `segment: column` or `{column: complexity, cuts: [4]}`: the contest is repeated within each segment.
+struct Segmenting {
+    Name column;
+    std::vector<double> cuts;  ///< ascending; values <= the first cut are the first segment; empty: one segment per value
+};
+
 struct DataSource {
     Name file;         ///< as written
     std::string path;  ///< resolved against the study file's folder
@@ -82,12 +88,14 @@ struct DataSource {
     RowRule rows = RowRule::drop;
     std::vector<Condition> where;
     std::optional<Name> cluster;
+    std::optional<Segmenting> segment;
 };
 
 struct TrialPlan {
     int folds = 10;
     Place folds_place;
-    int repeats = 50;
+    int repeats = 50;          ///< under auto_repeats the smallest number that is run
+    bool auto_repeats = false;  ///< repeats: auto
     std::uint64_t seed = 1;
     std::optional<Name> folds_file;
     std::string folds_path;  ///< resolved
@@ -98,6 +106,7 @@ struct TrialPlan {
 struct VerdictRules {
     double level = 0.05;
     double margin = 0.02;
+    bool completeness = false;  ///< add the flexible benchmark, completeness and restrictiveness
 };
 
 struct Study {
