@@ -42,7 +42,8 @@ Survey SurveyBuilder::build(const MakeValues& make_values) {
     check_answers(choice_.rows);
     drop_missing(table_, study_.data.rows, needed_, choice_);
     if (faults_.empty() && choice_.rows.size() < 2)
-        say(study_.data.file.place, say_lost(study_, table_, choice_));
+        faults_.push_back(study_.fault_at(study_.data.file.place, say_lost(study_, table_, choice_),
+                                          near_condition(study_, table_, where_texts)));
     if (faults_.empty()) {
         check_answers(choice_.rows);
         code_categories();

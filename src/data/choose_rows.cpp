@@ -10,6 +10,7 @@
 #include <algorithm>
 #include <cmath>
 #include <numeric>
+#include <set>
 #include <utility>
 
 namespace rivalfold {
@@ -132,6 +133,23 @@ std::string say_lost(const Study& study, const Table& table, const RowChoice& ch
     const std::string left = choice.rows.empty() ? fmt::format("none of the {} rows", table.n_rows) : "only 1 row";
     return fmt::format("{} of {} can be used{}{}", left, in_quotes(study.data.file.text), lost.empty() ? "" : "; lost to: ",
                        lost);
+}
+
+std::string near_condition(const Study& study, const Table& table, const std::vector<int>& where_texts) {
+    constexpr std::size_t kMostValues = 200;
+    for (std::size_t i = 0; i < where_texts.size(); ++i) {
+        const std::vector<std::string>& cells = table.texts[static_cast<std::size_t>(where_texts[i])];
+        std::set<std::string> seen;
+        for (std::size_t row = 0; row < cells.size() && seen.size() < kMostValues; ++row)
+            if (!cells[row].empty()) seen.insert(cells[row]);
+        const std::vector<std::string> held(seen.begin(), seen.end());
+        for (const std::string& value : study.data.where[i].values) {
+            const Allowed allowed({value});
+            if (std::any_of(cells.begin(), cells.end(), [&](const std::string& cell) { return allowed.holds(cell); })) continue;
+            if (std::string hint = did_you_mean(value, held); !hint.empty()) return hint;
+        }
+    }
+    return {};
 }
 
 }  // namespace rivalfold

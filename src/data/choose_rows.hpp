@@ -50,4 +50,7 @@ FaultLog check_ranges(const std::string& file, const Table& table, const std::ve
 /// `none of the 3 rows of "refits.csv" can be used; lost to: missing answer in "pln1" (3)`.
 std::string say_lost(const Study& study, const Table& table, const RowChoice& choice);
 
+/// `did you mean "closed"?` for the first value of a condition that its column never holds, if one it holds is near.
+std::string near_condition(const Study& study, const Table& table, const std::vector<int>& where_texts);
+
 }  // namespace rivalfold

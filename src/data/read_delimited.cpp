@@ -31,11 +31,12 @@ std::vector<ColumnUse> uses_of(const ColumnChoice& choice, const Layout& layout,
     return uses;
 }
 
-/// Adds what `choose` finds wrong to what the header has wrong already.
+/// Asks `choose`; what it finds wrong is told together with what the header has wrong already.
 ColumnChoice choose_columns(const ChooseColumns& choose, const Layout& layout, FaultLog& faults) {
     try {
         return choose(layout.header);
     } catch (const FaultError& error) {
+        if (faults.empty()) throw;
         for (const Fault& fault : error.faults()) faults.add(fault);
     }
     return {};

@@ -3,6 +3,7 @@
 #include "support/catch.hpp"
 
 #include <csv.h>
+#include <fmt/format.h>
 
 #include <random>
 
@@ -66,13 +67,13 @@ std::string random_table(std::mt19937& random, char delimiter) {
         for (std::size_t column = 0; column < n_columns; ++column) {
             if (column > 0) text += delimiter;
             if (row == 0) {
-                text += "h" + std::to_string(column);
+                text += fmt::format("h{}", column);
             } else if (random() % 2 == 0) {
                 text += random() % 4 == 0 ? " \"" : "\"";
                 for (std::size_t i = random() % 4; i > 0; --i) text += pieces[random() % pieces.size()];
                 text += random() % 4 == 0 ? "\"  " : "\"";
             } else {
-                text += std::to_string(random() % 100) + (random() % 5 == 0 ? "\" inch" : "");
+                text += fmt::format("{}{}", random() % 100, random() % 5 == 0 ? "\" inch" : "");
             }
         }
         text += row_end;

@@ -1,6 +1,7 @@
 // Files that nobody means well: they must end in a table or in a FaultError, in bounded time and memory.
 #include "data/layout.hpp"
 #include "reading.hpp"
+#include "studies.hpp"
 #include "support/catch.hpp"
 
 #include <chrono>
@@ -137,6 +138,36 @@ TEST_CASE("any bytes end in a table or in faults, the same for one thread and fo
     }
     CHECK(n_read > 1000);
     CHECK(n_read < 19000);
+}
+
+TEST_CASE("any bytes under a study end in a survey or in faults", "[data]") {
+    const Study study = study_of(R"(constructs:
+  skill: {indicators: ["a*"], reversed: ["*2"], range: [1, 7]}
+  sector: {category: k}
+  delivery: {indicators: [d]}
+controls: [sector]
+data: {rows: mean, where: {w: [1, x]}, cluster: c, missing_codes: [-9]}
+)");
+    const std::string start = "a1,a2,k,d,w,c\n1,2,u,3,1,p\n4,-9,v,6,x,p\n7,1,u,,x,q\n2,,v,5,1.0,q\n3,3,u,1,1,r\n";
+    std::mt19937 random(7);
+    int n_read = 0;
+    for (int trial = 0; trial < 5000; ++trial) {
+        std::string text = start;
+        for (std::size_t edits = 1 + random() % 3; edits > 0; --edits)
+            text[random() % text.size()] = start[random() % start.size()];
+        Survey survey;
+        if (faults_of([&] { survey = survey_of(study, text); }) != "nothing thrown") continue;
+        ++n_read;
+        std::size_t n_rows = survey.n();
+        for (const Dropped& dropped : survey.dropped) n_rows += dropped.rows.size();
+        REQUIRE(n_rows == survey.rows_read);
+        REQUIRE(survey.values.rows() == static_cast<Eigen::Index>(survey.n()));
+        REQUIRE(survey.clusters.size() == survey.n());
+        REQUIRE(survey.values.col(2).array().isNaN().sum() == 0);
+        REQUIRE(survey.has_missing == survey.values.array().isNaN().any());
+    }
+    CHECK(n_read > 500);
+    CHECK(n_read < 4500);
 }
 
 TEST_CASE("a table of many stretches and its faults do not depend on the number of threads", "[data]") {

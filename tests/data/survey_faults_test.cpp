@@ -95,6 +95,13 @@ data: {where: {phase: closed}}
           "missing answer in \"a\" (1), missing answer in \"b\" (2)\n"
           "    2 | data: {file: refits.csv, where: {phase: closed}}\n"
           "      |              ^");
+    CHECK(faults_between(std::string(kTwo) + "data: {where: {phase: [Closed, won]}}\n",
+                         "a,b,d,phase\n1,1,1,open\n2,2,2,closed\n") ==
+          "study.yaml:2:14: error: none of the 2 rows of \"refits.csv\" can be used; lost to: where: phase is not Closed or "
+          "won (2)\n"
+          "    2 | data: {file: refits.csv, where: {phase: [Closed, won]}}\n"
+          "      |              ^\n"
+          "did you mean \"closed\"?");
     CHECK(faults_between(kTwo, "a,b,d\n1,1,1\n") ==
           "study.yaml:2:14: error: only 1 row of \"refits.csv\" can be used\n"
           "    2 | data: {file: refits.csv}\n"
@@ -145,6 +152,16 @@ TEST_CASE("a category needs two levels and at most fifty", "[data]") {
           "a number, declare it under indicators\n"
           "    6 |   sector: {category: k}\n"
           "      |                      ^");
+}
+
+TEST_CASE("more unknown names than are shown are counted once", "[data]") {
+    std::string names;
+    for (int i = 0; i < 30; ++i) names += ", pln" + std::to_string(i);
+    const std::string message =
+        faults_between("constructs:\n  skill: {indicators: [a" + names + "]}\n  delivery: {indicators: [d]}\n", "a,d\n1,2\n");
+    CHECK(message.ends_with("\nand 10 more errors"));
+    CHECK(message.find("\"refits.csv\" has no column \"pln19\"\n") != std::string::npos);
+    CHECK(message.find("pln20\"\n") == std::string::npos);
 }
 
 TEST_CASE("a data file that is not there is faulted where the study names it", "[data]") {

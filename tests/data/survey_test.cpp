@@ -164,6 +164,20 @@ constructs:
           Texts{"construct \"mood\" is used by no theory; its columns do not decide which rows are used"});
 }
 
+TEST_CASE("a measurement of its own that a theory never meets gives advice", "[data]") {
+    const Survey survey = survey_of(R"(
+constructs:
+  skill: {indicators: [a]}
+  pace: {indicators: [b]}
+  delivery: {indicators: [d]}
+)",
+                                    "a,b,d\n1,,1\n2,2,2\n", "    constructs: {pace: {indicators: [b]}}\n");
+    CHECK(survey.n() == 2);
+    CHECK(survey.advice ==
+          Texts{"construct \"pace\" is used by no theory; its columns do not decide which rows are used",
+                "theory \"two\" measures construct \"pace\" its own way but does not use it"});
+}
+
 TEST_CASE("a column on both sides of an equation gives advice", "[data]") {
     const Survey survey = survey_of(R"(
 constructs:
