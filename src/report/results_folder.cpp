@@ -27,6 +27,7 @@ namespace {
 namespace fs = std::filesystem;
 
 constexpr std::string_view kBeside = ".rivalfold-";
+constexpr std::size_t kLongestName = 220;
 
 std::string in_words(int error) { return std::strerror(error); }
 
@@ -118,8 +119,11 @@ void check_results_folder(const std::string& folder) {
     const fs::path place = without_final_slash(folder);
     std::error_code error;
     const fs::path parent = parent_of(place);
+    if (fs::exists(parent, error) && !fs::is_directory(parent, error)) throw SaveError(fmt::format("cannot write {}: {} is a file, not a folder", folder, parent.string()));
     if (!fs::is_directory(parent, error)) throw SaveError(fmt::format("cannot write {}: the folder {} does not exist", folder, parent.string()));
     if (access(parent.c_str(), W_OK) != 0) throw SaveError(fmt::format("cannot write {}: no permission to write in {}", folder, parent.string()));
+    // File systems take names of 255 bytes; the folder that is written beside has a longer one than its place.
+    if (place.filename().string().size() > kLongestName) throw SaveError(fmt::format("cannot write {}: the folder's name is longer than {} bytes", folder, kLongestName));
     if (!fs::exists(fs::symlink_status(place, error))) return;
     if (fs::is_symlink(fs::symlink_status(place, error))) throw SaveError(fmt::format("{} is a symbolic link; name the folder that it points to", folder));
     if (!fs::is_directory(place, error)) throw SaveError(fmt::format("{} is a file; name a folder with -o", folder));
