@@ -210,7 +210,7 @@ void check_theory_names(const Study& study, FaultList& faults) {
             faults.add(name.place,
                        fmt::format("two theories have the name {}, the first in line {}; expected a name of its own",
                                    in_quotes(name.text), first->second.line));
-        if (name.text == "training mean" || name.text == "linear benchmark")
+        if (name.text == "training mean" || name.text == "linear benchmark" || name.text == "flexible benchmark")
             faults.add(name.place,
                        fmt::format("the theory {} has the name of a benchmark of every contest; expected another name",
                                    in_quotes(name.text)));

@@ -56,8 +56,12 @@ DATA
                  {phase: [closed, open]} for any of them
   cluster        (none) a column; rows with the same value are never split
                  between training and held-out rows
-  segment, holdout, order
-                 not supported yet
+  segment        (none) a column: the contest is repeated within the rows of
+                 each of its values, 2 to 10 of them. Or a numeric column cut at
+                 1 to 9 ascending numbers, {column: complexity, cuts: [4]}; rows
+                 equal to a cut lie below it. Neither the cluster column nor an
+                 indicator of the target
+  holdout, order not supported yet
 
 CONSTRUCTS
   Each is a name with either indicators or category.
@@ -95,7 +99,9 @@ TERMS OF AN EQUATION
 
 TRIAL
   folds          (10) 2 up to the number of rows, which leaves out one at a time
-  repeats        (50) 1 to 10000; auto is not supported yet
+  repeats        (50) 1 to 10000; or auto: at least 50, until the splits' Monte
+                 Carlo error of every pair of theories is at most a tenth of its
+                 standard error, at most 200
   seed           (1) 0 to 18446744073709551615; the same seed gives the same
                  splits on every machine
   folds_file     (none) a file with the columns row, repeat and fold, instead
@@ -109,7 +115,8 @@ VERDICT
   level          (0.05) above 0 and below 0.5
   margin         (0.02) the smallest relative difference in loss worth claiming,
                  from 0 to below 1; with 0 no two theories are declared equal
-  completeness   (false) true is not supported yet
+  completeness   (false) true adds a flexible benchmark: how much of what can be
+                 predicted a theory predicts, and how much it could have fitted
 
 VALUES
   Numbers are plain decimals: 7, -9, 0.05, 1e-3. Truth is true or false. Text
@@ -120,7 +127,7 @@ ROWS
   Rows are numbered from 1 in the order of the data file, the header not
   counted; every output that names a row uses that number. The rows used are the
   same for every theory: those complete on every column that any theory,
-  control or cluster uses.
+  control, cluster or segment uses.
 
 A held-out comparison shows which theory predicts better in a survey like this
 one. It is no experiment and shows no cause; decisions about individual people

@@ -91,6 +91,54 @@ std::vector<Condition> read_where(const Node& node, const std::string& label, Fa
     return conditions;
 }
 
+std::vector<double> read_cuts(const Node& node, const std::string& label, FaultList& faults) {
+    constexpr std::size_t kMostCuts = 9;
+    std::vector<double> cuts;
+    const bool list = node.kind == Node::Kind::list;
+    if (!list || node.items.empty() || node.items.size() > kMostCuts) {
+        faults.add(node.place,
+                   fmt::format("{} must be a list of 1 to {} ascending numbers, found {}", label, kMostCuts,
+                               list && !node.items.empty() ? fmt::format("{}", node.items.size()) : found(node)),
+                   node.kind == Node::Kind::text ? fmt::format("write [{}]", node.text) : std::string());
+        return cuts;
+    }
+    for (const Node& item : node.items) {
+        const auto cut = read_decimal(item, "an item of " + label, "a number", faults);
+        if (!cut) continue;
+        if (!cuts.empty() && *cut <= cuts.back())
+            faults.add(item.place,
+                       fmt::format("{} must ascend, found {} after {}", label, item.text, cuts.back()));
+        cuts.push_back(*cut + 0.0);  // -0 is 0
+    }
+    return cuts;
+}
+
+std::optional<Segmenting> read_segment(const Node& node, Place place, const std::string& label, FaultList& faults) {
+    Segmenting segment;
+    if (node.kind != Node::Kind::map) {
+        auto column = read_name(node, label, "a column name, or {column: complexity, cuts: [4]}", faults);
+        if (!column) return std::nullopt;
+        segment.column = std::move(*column);
+        return segment;
+    }
+    const Keys keys(node, place, label, kSegmentKeys, faults);
+    if (const Node* cuts = keys.value("cuts")) segment.cuts = read_cuts(*cuts, keys.label("cuts"), faults);
+    const Node* written = keys.value("column");
+    if (written == nullptr) return std::nullopt;
+    auto column = read_name(*written, keys.label("column"), "a column name", faults);
+    if (!column) return std::nullopt;
+    segment.column = std::move(*column);
+    return segment;
+}
+
+void check_segment(const DataSource& data, FaultList& faults) {
+    if (!data.segment || !data.cluster || data.segment->column.text != data.cluster->text) return;
+    faults.add(data.segment->column.place,
+               fmt::format("the segment column {} is the cluster column too; expected another column: a cluster would "
+                           "be a segment of its own",
+                           in_quotes(data.cluster->text)));
+}
+
 void check_folds_file(const Keys& keys) {
     if (keys.value("folds_file") == nullptr) return;
     for (const std::string_view key : {"folds", "repeats", "seed"})
@@ -135,7 +183,9 @@ DataSource read_data(const Node& node, Place place, const std::string& study_pat
     if (const Node* where = keys.value("where")) data.where = read_where(*where, keys.label("where"), faults);
     if (const Node* cluster = keys.value("cluster"))
         data.cluster = read_name(*cluster, keys.label("cluster"), "a column name", faults);
-    note_unsupported(keys, "segment", "run one study for each segment with \"where\"");
+    if (const Node* segment = keys.value("segment"))
+        data.segment = read_segment(*segment, keys.place("segment"), keys.label("segment"), faults);
+    check_segment(data, faults);
     note_unsupported(keys, "holdout", "leave the key out");
     note_unsupported(keys, "order", "leave the key out");
     return data;
@@ -153,9 +203,8 @@ TrialPlan read_trial(const Node& node, Place place, const std::string& study_pat
     }
     if (const Node* repeats = keys.value("repeats")) {
         if (repeats->kind == Node::Kind::text && repeats->text == "auto") {
-            faults.add(repeats->place,
-                       "\"repeats: auto\" is not supported yet; expected a whole number from 1 to 10000");
-        } else if (const auto number = read_whole(*repeats, keys.label("repeats"), 1, 10'000, faults)) {
+            trial.auto_repeats = true;
+        } else if (const auto number = read_whole(*repeats, keys.label("repeats"), 1, 10'000, faults, "auto")) {
             trial.repeats = static_cast<int>(*number);
         }
     }
@@ -192,12 +241,9 @@ VerdictRules read_verdict(const Node& node, Place place, FaultList& faults) {
         check_open_interval(number, *margin, keys.label("margin"), kExpected, number && *number >= 0.0 && *number < 1.0,
                             verdict.margin, faults);
     }
-    if (const Node* completeness = keys.value("completeness")) {
-        const auto wanted = read_truth(*completeness, keys.label("completeness"), faults);
-        if (wanted.value_or(false))
-            faults.add(completeness->place,
-                       "\"completeness: true\" is not supported yet; expected false, or leave the key out");
-    }
+    if (const Node* completeness = keys.value("completeness"))
+        verdict.completeness =
+            read_truth(*completeness, keys.label("completeness"), faults).value_or(verdict.completeness);
     return verdict;
 }
 

@@ -31,6 +31,7 @@ inline constexpr std::array kDataKeys = {Key{"file", "the name of a data file"},
                                          Key{"segment"},
                                          Key{"holdout"},
                                          Key{"order"}};
+inline constexpr std::array kSegmentKeys = {Key{"column", "a column name"}, Key{"cuts"}};
 inline constexpr std::array kConstructKeys = {Key{"indicators"}, Key{"reversed"}, Key{"range"}, Key{"weights"},
                                               Key{"category"}};
 inline constexpr std::array kTheoryKeys = {Key{"name", "a name of its own"}, Key{"claim"},

@@ -28,7 +28,8 @@ struct Group {
 std::string belongs_under(std::string_view name) {
     const Group groups[] = {{kStudyKeys, "the study itself"}, {kDataKeys, "\"data\""},
                             {kConstructKeys, "a construct"},  {kTheoryKeys, "a theory"},
-                            {kTrialKeys, "\"trial\""},        {kVerdictKeys, "\"verdict\""}};
+                            {kTrialKeys, "\"trial\""},        {kVerdictKeys, "\"verdict\""},
+                            {kSegmentKeys, "\"segment\" of \"data\""}};
     std::string_view owner;
     for (const Group& group : groups) {
         const bool has =
@@ -240,7 +241,7 @@ std::vector<std::string> read_cells(const Node& node, const std::string& label, 
 }
 
 std::optional<std::uint64_t> read_whole(const Node& node, const std::string& label, std::uint64_t low,
-                                        std::uint64_t high, FaultList& faults) {
+                                        std::uint64_t high, FaultList& faults, std::string_view or_word) {
     std::uint64_t number = 0;
     std::string_view digits = node.text;
     if (digits.starts_with('+')) digits.remove_prefix(1);
@@ -249,10 +250,10 @@ std::optional<std::uint64_t> read_whole(const Node& node, const std::string& lab
                        end == digits.data() + digits.size();
     if (whole && number >= low && number <= high) return number;
     const bool open = high == std::numeric_limits<std::int32_t>::max();
-    note_type(node, label,
-              open ? fmt::format("a whole number of {} or more", low)
-                   : fmt::format("a whole number from {} to {}", low, high),
-              faults, number_hint(node));
+    std::string expected = open ? fmt::format("a whole number of {} or more", low)
+                                : fmt::format("a whole number from {} to {}", low, high);
+    if (!or_word.empty()) expected += fmt::format(", or {}", or_word);
+    note_type(node, label, expected, faults, number_hint(node));
     return std::nullopt;
 }
 

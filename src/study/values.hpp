@@ -65,8 +65,9 @@ std::vector<Name> read_names(const Node& node, const std::string& label, std::st
 std::vector<std::string> read_cells(const Node& node, const std::string& label, FaultList& faults);
 
 /// A whole number in [low, high], decimal digits only. A high of 2^31 - 1 is the computer's limit and not spoken of.
+/// `or_word` is a word that could stand instead, which the caller has looked for.
 std::optional<std::uint64_t> read_whole(const Node& node, const std::string& label, std::uint64_t low,
-                                        std::uint64_t high, FaultList& faults);
+                                        std::uint64_t high, FaultList& faults, std::string_view or_word = {});
 
 /// A finite decimal number; `expected` says what it must be, e.g. `a number above 0 and below 0.5`.
 std::optional<double> read_decimal(const Node& node, const std::string& label, std::string_view expected,

@@ -41,6 +41,7 @@ TEST_CASE("the help page names every key", "[help]") {
     const std::set<std::string> words = words_of(help_study());
     check_keys(words, kStudyKeys);
     check_keys(words, kDataKeys);
+    check_keys(words, kSegmentKeys);
     check_keys(words, kConstructKeys);
     check_keys(words, kTheoryKeys);
     check_keys(words, kTermKeys);

@@ -2,6 +2,7 @@
 #include "rivalfold/study/read_study.hpp"
 
 #include <clocale>
+#include <cmath>
 #include <filesystem>
 #include <fstream>
 #include <locale>
@@ -24,6 +25,7 @@ data:
   rows: mean
   where: {phase: closed, wave: [1, true]}
   cluster: yard
+  segment: {column: complexity, cuts: [-0.0, 4, 5.5]}
 constructs:
   planning: {indicators: ["*pln1", pln2], reversed: ["*1"], range: [1, 7.5], weights: mode_b}
   skill: {indicators: [skl*], weights: equal}
@@ -48,7 +50,7 @@ theories:
       skill: {indicators: [skl1, skl2]}
       nearness: {indicators: [ner1]}
 trial: {folds: 2, repeats: 10000, seed: 18446744073709551615, loss: absolute, mediators: predicted}
-verdict: {level: 1e-3, margin: 0, completeness: false}
+verdict: {level: 1e-3, margin: 0, completeness: true}
 )";
 
 std::vector<std::string> texts(const std::vector<Name>& names) {
@@ -81,6 +83,7 @@ TEST_CASE("a small study gets every default", "[study]") {
     CHECK(study.data.rows == RowRule::drop);
     CHECK(study.data.where.empty());
     CHECK_FALSE(study.data.cluster.has_value());
+    CHECK_FALSE(study.data.segment.has_value());
     CHECK(study.constructs.at(0).weights == Weights::mode_a);
     CHECK_FALSE(study.constructs.at(0).weights_given);
     CHECK(study.controls.empty());
@@ -88,12 +91,14 @@ TEST_CASE("a small study gets every default", "[study]") {
     CHECK(study.theories.at(0).claim.empty());
     CHECK(study.trial.folds == 10);
     CHECK(study.trial.repeats == 50);
+    CHECK_FALSE(study.trial.auto_repeats);
     CHECK(study.trial.seed == 1);
     CHECK_FALSE(study.trial.folds_file.has_value());
     CHECK(study.trial.loss == Loss::squared);
     CHECK(study.trial.mediators == Mediators::measured);
     CHECK(study.verdict.level == 0.05);
     CHECK(study.verdict.margin == 0.02);
+    CHECK_FALSE(study.verdict.completeness);
 }
 
 TEST_CASE("a study that uses every key is read as written", "[study]") {
@@ -112,6 +117,12 @@ TEST_CASE("a study that uses every key is read as written", "[study]") {
     CHECK(study.data.where[1].column.text == "wave");
     CHECK(study.data.where[1].values == Texts{"1", "true"});
     CHECK(study.data.cluster.value().text == "yard");
+    REQUIRE(study.data.segment.has_value());
+    CHECK(study.data.segment->column.text == "complexity");
+    CHECK(study.data.segment->column.place.line == 12);
+    CHECK(study.data.segment->column.place.column == 21);
+    CHECK(study.data.segment->cuts == std::vector<double>{0, 4, 5.5});
+    CHECK_FALSE(std::signbit(study.data.segment->cuts[0]));
     const Construct& planning = study.constructs.at(0);
     CHECK(texts(planning.indicators) == Texts{"*pln1", "pln2"});
     CHECK(texts(planning.reversed) == Texts{"*1"});
@@ -133,6 +144,7 @@ TEST_CASE("a study that uses every key is read as written", "[study]") {
     CHECK(study.trial.mediators == Mediators::predicted);
     CHECK(study.verdict.level == 0.001);
     CHECK(study.verdict.margin == 0.0);
+    CHECK(study.verdict.completeness);
 }
 
 TEST_CASE("theories hold their equations in file order and their own constructs", "[study]") {
@@ -231,6 +243,25 @@ TEST_CASE("a data path is relative to the study file's folder unless it is absol
     CHECK(study.trial.folds_path == "a/splits.csv");
 }
 
+TEST_CASE("repeats: auto keeps the default as the smallest number", "[study]") {
+    const Study study = read_study_text(changed(kStudy, {{"folds: 5", "folds: 5\n  repeats: auto"}}), "study.yaml");
+    CHECK(study.trial.auto_repeats);
+    CHECK(study.trial.repeats == 50);
+}
+
+TEST_CASE("a segment is a column, alone or as a key without cuts", "[study]") {
+    for (const std::string written : {"complexity", "{column: complexity}", "\"complexity\""}) {
+        INFO(written);
+        const Study study =
+            read_study_text(changed(kStudy, {{"refits.csv", "refits.csv\n  segment: " + written}}), "study.yaml");
+        REQUIRE(study.data.segment.has_value());
+        CHECK(study.data.segment->column.text == "complexity");
+        CHECK(study.data.segment->cuts.empty());
+    }
+    const std::string nine = "refits.csv\n  segment: {cuts: [-4, -3, -2, -1, 0, 1, 2, 3, 4], column: complexity}";
+    CHECK(read_study_text(changed(kStudy, {{"refits.csv", nine}}), "study.yaml").data.segment->cuts.size() == 9);
+}
+
 TEST_CASE("every delimiter can be written", "[study]") {
     const std::vector<std::pair<std::string, char>> cases = {
         {"\",\"", ','}, {";", ';'}, {"\"|\"", '|'}, {"tab", '\t'}, {"\"\\t\"", '\t'}};
@@ -268,7 +299,7 @@ TEST_CASE("numbers are read and shown the same when C++ streams group digits", "
     CHECK(study.constructs.at(0).range.value().second == 7.5);
     CHECK(study.trial.seed == 18446744073709551615ULL);
     CHECK(faults == R"(
-study.yaml:19:12: error: "repeats" of "trial" must be a whole number from 1 to 10000, found "20000"
+study.yaml:19:12: error: "repeats" of "trial" must be a whole number from 1 to 10000, or auto, found "20000"
    19 |   repeats: 20000
       |            ^
 )");

@@ -188,17 +188,13 @@ study.yaml:4:12: error: "cluster" of "data" must be a column name, found a list
 )FAULT");
 }
 
-TEST_CASE("segment, holdout and order are not supported yet", "[study]") {
-    CHECK(faults_after({{"refits.csv",
-                         "refits.csv\n  segment: complexity\n  holdout: {share: 0.25}\n  order: date"}}) == R"FAULT(
-study.yaml:4:3: error: "segment" is not supported yet; run one study for each segment with "where"
-    4 |   segment: complexity
+TEST_CASE("holdout and order are not supported yet", "[study]") {
+    CHECK(faults_after({{"refits.csv", "refits.csv\n  holdout: {share: 0.25}\n  order: date"}}) == R"FAULT(
+study.yaml:4:3: error: "holdout" is not supported yet; leave the key out
+    4 |   holdout: {share: 0.25}
       |   ^
-study.yaml:5:3: error: "holdout" is not supported yet; leave the key out
-    5 |   holdout: {share: 0.25}
-      |   ^
-study.yaml:6:3: error: "order" is not supported yet; leave the key out
-    6 |   order: date
+study.yaml:5:3: error: "order" is not supported yet; leave the key out
+    5 |   order: date
       |   ^
 )FAULT");
 }

@@ -65,7 +65,7 @@ study.yaml:19:10: error: "folds" of "trial" must be a whole number of 2 or more,
 
 TEST_CASE("underscores in a number are faulted", "[study]") {
     CHECK(faults_after({{"folds: 5", "repeats: 1_000"}}) == R"FAULT(
-study.yaml:19:12: error: "repeats" of "trial" must be a whole number from 1 to 10000, found "1_000"
+study.yaml:19:12: error: "repeats" of "trial" must be a whole number from 1 to 10000, or auto, found "1_000"
    19 |   repeats: 1_000
       |            ^
 write it without underscores
@@ -74,17 +74,25 @@ write it without underscores
 
 TEST_CASE("repeats end at 10000", "[study]") {
     CHECK(faults_after({{"folds: 5", "repeats: 10001"}}) == R"FAULT(
-study.yaml:19:12: error: "repeats" of "trial" must be a whole number from 1 to 10000, found "10001"
+study.yaml:19:12: error: "repeats" of "trial" must be a whole number from 1 to 10000, or auto, found "10001"
    19 |   repeats: 10001
       |            ^
 )FAULT");
 }
 
-TEST_CASE("repeats: auto is not supported yet", "[study]") {
-    CHECK(faults_after({{"folds: 5", "repeats: auto"}}) == R"FAULT(
-study.yaml:19:12: error: "repeats: auto" is not supported yet; expected a whole number from 1 to 10000
-   19 |   repeats: auto
+TEST_CASE("repeats knows one word", "[study]") {
+    CHECK(faults_after({{"folds: 5", "repeats: automatic"}}) == R"FAULT(
+study.yaml:19:12: error: "repeats" of "trial" must be a whole number from 1 to 10000, or auto, found "automatic"
+   19 |   repeats: automatic
       |            ^
+)FAULT");
+}
+
+TEST_CASE("repeats: auto stands beside no folds_file either", "[study]") {
+    CHECK(faults_after({{"folds: 5", "folds_file: splits.csv\n  repeats: auto"}}) == R"FAULT(
+study.yaml:20:3: error: "repeats" stands beside "folds_file", which is given instead of folds, repeats and seed; expected one or the other
+   20 |   repeats: auto
+      |   ^
 )FAULT");
 }
 
@@ -173,14 +181,6 @@ study.yaml:21:11: error: "margin" of "verdict" must be a number from 0 to below 
    21 |   margin: 0,02
       |           ^
 write 0.02 with a decimal point
-)FAULT");
-}
-
-TEST_CASE("completeness: true is not supported yet", "[study]") {
-    CHECK(faults_after({{"folds: 5", "folds: 5\nverdict: {completeness: true}"}}) == R"FAULT(
-study.yaml:20:25: error: "completeness: true" is not supported yet; expected false, or leave the key out
-   20 | verdict: {completeness: true}
-      |                         ^
 )FAULT");
 }
 
