@@ -185,16 +185,24 @@ FoldPlan draw_folds(std::size_t n_rows, const std::vector<int>& clusters, int fo
     if (plan.repeats < repeats)
         plan.advice.push_back(fmt::format("Leaving one {} out at a time splits the rows in only one way: 1 repeat was run instead of {}.",
                                           clusters.empty() ? "row" : "cluster", repeats));
-    plan.fold_of.resize(static_cast<std::size_t>(plan.repeats) * n_rows);
-    for (int r = 0; r < plan.repeats; ++r) {
-        RandomStream stream(seed, Purpose::folds, static_cast<std::uint32_t>(r));
-        const std::span<std::uint32_t> fold_of(plan.fold_of.data() + static_cast<std::size_t>(r) * n_rows, n_rows);
-        if (clusters.empty())
-            deal_rows(fold_of, folds, stream);
-        else
-            deal_clusters(fold_of, clusters, n_clusters, folds, stream);
-    }
+    const int wanted = plan.repeats;
+    plan.repeats = 0;
+    extend_folds(plan, clusters, wanted, seed);
     return plan;
+}
+
+void extend_folds(FoldPlan& plan, const std::vector<int>& clusters, int repeats, std::uint64_t seed) {
+    const std::size_t n_clusters = clusters.empty() ? 0 : static_cast<std::size_t>(*std::max_element(clusters.begin(), clusters.end())) + 1;
+    plan.fold_of.resize(static_cast<std::size_t>(repeats) * plan.n_rows);
+    for (int r = plan.repeats; r < repeats; ++r) {
+        RandomStream stream(seed, Purpose::folds, static_cast<std::uint32_t>(r));
+        const std::span<std::uint32_t> fold_of(plan.fold_of.data() + static_cast<std::size_t>(r) * plan.n_rows, plan.n_rows);
+        if (clusters.empty())
+            deal_rows(fold_of, plan.folds, stream);
+        else
+            deal_clusters(fold_of, clusters, n_clusters, plan.folds, stream);
+    }
+    plan.repeats = repeats;
 }
 
 FoldPlan plan_folds(const Study& study, const Survey& survey) {

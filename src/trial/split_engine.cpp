@@ -279,7 +279,7 @@ Eigen::MatrixXd SplitEngine::gram_of(int n_columns, const FormColumns& form) {
 }
 
 void SplitEngine::predict_segment(const FoldRange& range, std::size_t segment, const std::vector<SplitFits>& fits,
-                                  const std::vector<const Contestant*>& contestants, const LossRule& rule, double* row_loss, Room& mine,
+                                  const std::vector<const Contestant*>& contestants, const LossRule& rule, const PredictionSlots& slots, Room& mine,
                                   std::vector<SplitErrors>& out) {
     const auto q = static_cast<std::ptrdiff_t>(rule.target_columns.size());
     out.resize(range.folds());
@@ -321,23 +321,31 @@ void SplitEngine::predict_segment(const FoldRange& range, std::size_t segment, c
                 double sum = 0;
                 for (std::ptrdiff_t i = 0; i < n; ++i) {
                     const double value = loss[i] / static_cast<double>(q);
-                    row_loss[static_cast<Eigen::Index>(c) * sample_.n + mine.row[static_cast<std::size_t>(begin + i)]] += value;
+                    slots.row_loss[static_cast<Eigen::Index>(c) * sample_.n + mine.row[static_cast<std::size_t>(begin + i)]] += value;
                     sum += value;
                 }
                 out[k].loss[c] += sum;
+                if (!slots.errors || rule.error_slot[c] < 0) continue;
+                for (std::ptrdiff_t j = 0; j < q; ++j) {
+                    const double* actual = rows.values + rule.target_columns[static_cast<std::size_t>(j)] * rows.stride;
+                    const double* predicted = mine.predicted.col(j).data();
+                    double* to = slots.errors + (rule.error_slot[c] * q + j) * sample_.n;
+                    const double scale = rule.one_over_unit(j);
+                    for (std::ptrdiff_t i = 0; i < n; ++i) to[mine.row[static_cast<std::size_t>(begin + i)]] = (actual[i] - predicted[i]) * scale;
+                }
             }
         }
     });
 }
 
 void SplitEngine::predict(const std::vector<FoldRange>& ranges, const std::vector<std::vector<SplitFits>>& fits,
-                          const std::vector<const Contestant*>& contestants, const LossRule& rule, const std::vector<double*>& row_loss,
+                          const std::vector<const Contestant*>& contestants, const LossRule& rule, const std::vector<PredictionSlots>& slots,
                           std::vector<std::vector<SplitErrors>>& out) {
     const std::size_t segments = n_segments();
     std::vector<std::vector<SplitErrors>> partial(ranges.size() * segments);
     pool_.run(partial.size(), [&](std::size_t number, unsigned worker) {
         const std::size_t r = number / segments;
-        predict_segment(ranges[r], number % segments, fits[r], contestants, rule, row_loss[r], room(worker, &contestants), partial[number]);
+        predict_segment(ranges[r], number % segments, fits[r], contestants, rule, slots[r], room(worker, &contestants), partial[number]);
     });
     out.resize(ranges.size());
     for (std::size_t r = 0; r < ranges.size(); ++r) {

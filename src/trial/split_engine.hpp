@@ -42,6 +42,13 @@ struct LossRule {
     bool absolute = false;
     Eigen::VectorXd one_over_unit;     ///< per target indicator: 1 / u_j
     std::vector<int> target_columns;   ///< sample columns
+    std::vector<std::ptrdiff_t> error_slot;  ///< per contestant: its place among the recorded errors, or -1
+};
+
+/// Where one range's predictions go.
+struct PredictionSlots {
+    double* row_loss = nullptr;  ///< [contestant * n + row], added to
+    double* errors = nullptr;    ///< [(error_slot * q + j) * n + row], overwritten; null: not recorded
 };
 
 class SplitEngine {
@@ -53,9 +60,9 @@ public:
     /// Fits every contestant to the rows outside each fold. `whole` is the Gram of all rows.
     void fit(const std::vector<FoldRange>& ranges, const Gram& whole, const std::vector<const Contestant*>& contestants,
              std::vector<std::vector<SplitFits>>& out);
-    /// Predicts each fold's rows; writes row losses to row_loss[slot of range](contestant * n + row), adding to what is there.
+    /// Predicts each fold's rows into the slots of its range.
     void predict(const std::vector<FoldRange>& ranges, const std::vector<std::vector<SplitFits>>& fits,
-                 const std::vector<const Contestant*>& contestants, const LossRule& rule, const std::vector<double*>& row_loss,
+                 const std::vector<const Contestant*>& contestants, const LossRule& rule, const std::vector<PredictionSlots>& slots,
                  std::vector<std::vector<SplitErrors>>& out);
 
     /// Fits to all rows.
@@ -79,7 +86,7 @@ private:
     void fit_designs(const std::vector<FoldRange>& ranges, const std::vector<const Contestant*>& contestants,
                      std::vector<std::vector<SplitFits>>& out);
     void predict_segment(const FoldRange& range, std::size_t segment, const std::vector<SplitFits>& fits,
-                         const std::vector<const Contestant*>& contestants, const LossRule& rule, double* row_loss, Room& room,
+                         const std::vector<const Contestant*>& contestants, const LossRule& rule, const PredictionSlots& slots, Room& room,
                          std::vector<SplitErrors>& out);
     Room& room(unsigned worker, const std::vector<const Contestant*>* contestants);
 

@@ -1,5 +1,6 @@
 #include "rivalfold/verdict/paired_tests.hpp"
 
+#include "rivalfold/trial/standard_error.hpp"
 #include "rivalfold/verdict/distributions.hpp"
 
 #include <algorithm>
@@ -34,21 +35,11 @@ PairedTest finish(double mean, double centre, double se, double df, double level
 }  // namespace
 
 PairedTest row_test(const Eigen::VectorXd& d, double level) {
-    const auto n = static_cast<double>(d.size());
-    const double mean = d.mean();
-    const bool varies = d.maxCoeff() > d.minCoeff();
-    const double variance = varies ? (d.array() - mean).square().sum() / (n - 1) : 0;
-    return finish(mean, mean, std::sqrt(variance / n), n - 1, level);
+    return finish(d.mean(), d.mean(), standard_error(d, {}, 0), static_cast<double>(d.size()) - 1, level);
 }
 
 PairedTest cluster_test(const Eigen::VectorXd& d, const std::vector<int>& cluster, std::size_t n_clusters, double level) {
-    const auto n = static_cast<double>(d.size());
-    const auto g = static_cast<double>(n_clusters);
-    const double mean = d.mean();
-    Eigen::VectorXd sums = Eigen::VectorXd::Zero(static_cast<Eigen::Index>(n_clusters));
-    for (Eigen::Index i = 0; i < d.size(); ++i) sums(cluster[static_cast<std::size_t>(i)]) += d(i) - mean;
-    const bool varies = d.maxCoeff() > d.minCoeff();
-    return finish(mean, mean, varies ? std::sqrt(g / (g - 1) * sums.squaredNorm()) / n : 0, g - 1, level);
+    return finish(d.mean(), d.mean(), standard_error(d, cluster, n_clusters), static_cast<double>(n_clusters) - 1, level);
 }
 
 PairedTest corrected_test(const Eigen::VectorXd& s, int folds, double difference, double level) {

@@ -34,6 +34,9 @@ struct FoldPlan {
 /// `clusters` is empty or holds a cluster number from 0 for each row. Precondition: 2 <= folds <= rows (or clusters).
 FoldPlan draw_folds(std::size_t n_rows, const std::vector<int>& clusters, int folds, int repeats, std::uint64_t seed);
 
+/// Adds repeats to a drawn plan until it has `repeats`: the same folds that draw_folds would have given at once.
+void extend_folds(FoldPlan& plan, const std::vector<int>& clusters, int repeats, std::uint64_t seed);
+
 /// The plan that a study asks for: drawn, or read from its folds_file. Throws FaultError: more folds than rows or clusters;
 /// a folds_file that misses a used row, names a row twice or one beyond the data, skips a fold, or splits a cluster.
 FoldPlan plan_folds(const Study& study, const Survey& survey);

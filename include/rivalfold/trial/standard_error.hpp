@@ -1,0 +1,15 @@
+// How far chance alone may move a mean of row differences.
+#pragma once
+
+#include <Eigen/Core>
+
+#include <vector>
+
+namespace rivalfold {
+
+/// Standard error of the mean of d (n >= 2 rows): sd(d) / sqrt n (divisor n - 1). With clusters 0 .. n_clusters - 1 (one per row):
+/// sqrt(G/(G-1) sum over clusters of (sum over its rows of (d_i - D))^2) / n (Liang & Zeger 1986, Biometrika 73(1), 13-22).
+/// Exactly 0 where all differences are equal.
+double standard_error(const Eigen::VectorXd& d, const std::vector<int>& clusters, std::size_t n_clusters);
+
+}  // namespace rivalfold
