@@ -111,7 +111,8 @@ FaultLog check_ranges(const std::string& file, const Table& table, const std::ve
             if (++kept <= FaultLog::kMost) first.push_back({row, i});
         }
     }
-    std::stable_sort(first.begin(), first.end(), [](const OutOfRange& a, const OutOfRange& b) { return a.row < b.row; });
+    std::stable_sort(first.begin(), first.end(),
+                     [](const OutOfRange& a, const OutOfRange& b) { return a.row < b.row; });
     FaultLog log;
     for (std::size_t i = 0; i < first.size() && !log.full(); ++i) {
         const RangeRule& rule = rules[first[i].rule];
@@ -131,8 +132,8 @@ std::string say_lost(const Study& study, const Table& table, const RowChoice& ch
     for (const Dropped& dropped : choice.dropped)
         lost += fmt::format("{}{} ({})", lost.empty() ? "" : ", ", dropped.reason, dropped.rows.size());
     const std::string left = choice.rows.empty() ? fmt::format("none of the {} rows", table.n_rows) : "only 1 row";
-    return fmt::format("{} of {} can be used{}{}", left, in_quotes(study.data.file.text), lost.empty() ? "" : "; lost to: ",
-                       lost);
+    return fmt::format("{} of {} can be used{}{}", left, in_quotes(study.data.file.text),
+                       lost.empty() ? "" : "; lost to: ", lost);
 }
 
 std::string near_condition(const Study& study, const Table& table, const std::vector<int>& where_texts) {
@@ -145,7 +146,8 @@ std::string near_condition(const Study& study, const Table& table, const std::ve
         const std::vector<std::string> held(seen.begin(), seen.end());
         for (const std::string& value : study.data.where[i].values) {
             const Allowed allowed({value});
-            if (std::any_of(cells.begin(), cells.end(), [&](const std::string& cell) { return allowed.holds(cell); })) continue;
+            const auto holds = [&](const std::string& cell) { return allowed.holds(cell); };
+            if (std::any_of(cells.begin(), cells.end(), holds)) continue;
             if (std::string hint = did_you_mean(value, held); !hint.empty()) return hint;
         }
     }

@@ -15,7 +15,8 @@ constexpr std::size_t kStretchBytes = std::size_t{1} << 18;
 class RowCounter {
 public:
     RowCounter(const ByteSource& source, const Layout& layout)
-        : source_(source), layout_(layout), one_column_(layout.header.size() == 1), buffer_(kBlockBytes),
+        : source_(source), layout_(layout), one_column_(layout.header.size() == 1),
+          buffer_(static_cast<std::size_t>(std::min<std::uint64_t>(kBlockBytes, source.size() + 1))),
           base_(layout.rows_begin), line_(layout.first_line) {
         stretch_ = {base_, 0, 0, 0, line_};
     }

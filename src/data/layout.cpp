@@ -65,7 +65,8 @@ bool is_wide_text(std::string_view sample) {
 }
 
 void check_text(std::string_view sample, const std::string& file) {
-    if (is_wide_text(sample)) fail(file, {}, "this is UTF-16 text; save it as UTF-8 (\"CSV UTF-8\" in most spreadsheets)");
+    if (is_wide_text(sample))
+        fail(file, {}, "this is UTF-16 text; save it as UTF-8 (\"CSV UTF-8\" in most spreadsheets)");
     if (sample.starts_with("PK\x03\x04"))
         fail(file, {}, "this is a spreadsheet or another zip archive, not delimited text; save it as CSV");
 }
@@ -93,7 +94,8 @@ void parse_header(std::string_view row, Layout& layout, FaultLog& faults) {
         if (!is_utf8(name)) say(fmt::format("{} is not UTF-8 text; save the file as UTF-8", in_quotes(name)));
         if (name.empty()) continue;
         const auto [first, is_new] = seen.emplace(name, number);
-        if (!is_new) say(fmt::format("{} is the name of column {} too; rename one of them", in_quotes(name), first->second));
+        if (!is_new)
+            say(fmt::format("{} is the name of column {} too; rename one of them", in_quotes(name), first->second));
     }
 }
 

@@ -27,8 +27,10 @@ bool is_whole(const Eigen::MatrixXd& source, const std::vector<ValueColumn>& col
 Eigen::MatrixXd gather_values(const Eigen::MatrixXd& source, std::span<const std::size_t> rows,
                               const std::vector<ValueColumn>& columns) {
     Eigen::MatrixXd values(static_cast<Eigen::Index>(rows.size()), static_cast<Eigen::Index>(columns.size()));
-    for (std::size_t i = 0; i < columns.size(); ++i)
-        copy_column(source.col(columns[i].source).data(), rows, columns[i], values.col(static_cast<Eigen::Index>(i)).data());
+    for (std::size_t i = 0; i < columns.size(); ++i) {
+        double* const to = values.col(static_cast<Eigen::Index>(i)).data();
+        copy_column(source.col(columns[i].source).data(), rows, columns[i], to);
+    }
     return values;
 }
 
