@@ -163,7 +163,9 @@ data: {rows: mean, where: {w: [1, x]}, cluster: c, missing_codes: [-9]}
         REQUIRE(n_rows == survey.rows_read);
         REQUIRE(survey.values.rows() == static_cast<Eigen::Index>(survey.n()));
         REQUIRE(survey.clusters.size() == survey.n());
-        REQUIRE(survey.values.col(2).array().isNaN().sum() == 0);
+        REQUIRE(survey.values.cols() == static_cast<Eigen::Index>(survey.variables.size()));
+        const int outcome = survey.measurement(0, "delivery")->variables.at(0);
+        REQUIRE_FALSE(survey.values.col(outcome).array().isNaN().any());
         REQUIRE(survey.has_missing == survey.values.array().isNaN().any());
     }
     CHECK(n_read > 500);
