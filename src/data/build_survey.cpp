@@ -1,6 +1,7 @@
 #include "data/build_survey.hpp"
 
 #include "data/levels.hpp"
+#include "data/segments.hpp"
 
 #include "study/characters.hpp"
 
@@ -32,6 +33,11 @@ SurveyBuilder::SurveyBuilder(const Study& study, const Table& table)
     for (const FoundConstruct& found : found_.constructs) add_construct(found);
     if (found_.cluster)
         need({table.header[*found_.cluster], -1, text_index(*found_.cluster), true, study.data.cluster->place});
+    if (found_.segment) {
+        const bool cut = !study.data.segment->cuts.empty();
+        need({table.header[*found_.segment], cut ? number_index(*found_.segment) : -1,
+              cut ? -1 : text_index(*found_.segment), true, study.data.segment->column.place});
+    }
 }
 
 Survey SurveyBuilder::build(const MakeValues& make_values) {
@@ -48,6 +54,7 @@ Survey SurveyBuilder::build(const MakeValues& make_values) {
         check_answers(choice_.rows);
         code_categories();
         code_clusters();
+        code_segments();
     }
     if (out_of_range.empty() && faults_.empty()) {
         survey_.values = make_values(choice_.rows, value_columns_);
@@ -181,6 +188,20 @@ void SurveyBuilder::code_clusters() {
     survey_.clusters = std::move(levels.codes);
 }
 
+void SurveyBuilder::code_segments() {
+    if (!found_.segment) return;
+    Segments segments;
+    if (study_.data.segment->cuts.empty()) {
+        const auto text = static_cast<std::size_t>(text_index(*found_.segment));
+        segments = segments_by_value(study_, table_.texts[text], choice_.rows, faults_);
+    } else {
+        const double* const values = table_.numbers.col(number_index(*found_.segment)).data();
+        segments = segments_by_cuts(study_, values, choice_.rows, faults_);
+    }
+    survey_.segment_names = std::move(segments.names);
+    survey_.segments = std::move(segments.codes);
+}
+
 void SurveyBuilder::advise() {
     for (const FoundConstruct& found : found_.constructs) {
         const std::string name = in_quotes(found.construct->name.text);
@@ -191,20 +212,14 @@ void SurveyBuilder::advise() {
                 : fmt::format("theory {} measures construct {} its own way but does not use it",
                               in_quotes(study_.theories[found.theory].name.text), name));
     }
-    std::vector<std::size_t> of_target;
-    for (const FoundConstruct& found : found_.constructs)
-        if (found.is_target && found.used)
-            for (const FoundIndicator& indicator : found.indicators) of_target.push_back(indicator.column);
-    for (const FoundConstruct& found : found_.constructs) {
-        if (!found.used || found.is_target) continue;
-        for (const FoundIndicator& indicator : found.indicators)
-            if (std::find(of_target.begin(), of_target.end(), indicator.column) != of_target.end())
-                survey_.advice.push_back(fmt::format(
-                    "column {} measures both the target {} and construct {}; what is to be predicted then helps to predict "
-                    "itself: leave it out of one of them",
-                    in_quotes(table_.header[indicator.column]), in_quotes(study_.target.text),
-                    in_quotes(found.construct->name.text)));
-    }
+    std::vector<std::size_t> counts(survey_.segment_names.size(), 0);
+    for (const int segment : survey_.segments) ++counts[static_cast<std::size_t>(segment)];
+    for (std::size_t i = 0; i < counts.size(); ++i)
+        if (counts[i] < kFewRows)
+            survey_.advice.push_back(
+                fmt::format("segment {} has only {} {} used; with fewer than about {} a contest rarely tells theories "
+                            "apart (common practice): read it as a hint, or join segments",
+                            in_quotes(survey_.segment_names[i]), counts[i], counts[i] == 1 ? "row" : "rows", kFewRows));
 }
 
 void SurveyBuilder::say(Place place, std::string message) {

@@ -1,5 +1,5 @@
-// From the table and the names resolved in its header to the survey: rows, variables, categories, clusters, and what is
-// wrong with them. Knows nothing of files.
+// From the table and the names resolved in its header to the survey: rows, variables, categories, clusters, segments, and
+// what is wrong with them. Knows nothing of files.
 #pragma once
 
 #include "data/choose_rows.hpp"
@@ -39,6 +39,7 @@ private:
     void check_variables();
     void code_categories();
     void code_clusters();
+    void code_segments();
     void advise();
     void say(Place place, std::string message);
 

@@ -48,6 +48,8 @@ public:
         for (const Condition& condition : study_.data.where)
             found_.where.push_back(position(condition.column).value_or(0));
         if (study_.data.cluster) found_.cluster = position(*study_.data.cluster);
+        if (study_.data.segment) found_.segment = position(study_.data.segment->column);
+        keep_target_apart();
         if (!faults_.empty()) throw FaultError(std::move(faults_));
         return std::move(found_);
     }
@@ -118,6 +120,31 @@ private:
                 say(name.place, fmt::format("construct {} reverses {} but has no range to reverse within",
                                             in_quotes(construct.name.text), in_quotes(name.text)));
         }
+    }
+
+    /// What is to be predicted must not be among what predicts it.
+    void keep_target_apart() {
+        std::set<std::size_t> of_target;
+        for (const FoundConstruct& found : found_.constructs)
+            if (found.is_target)
+                for (const FoundIndicator& indicator : found.indicators) of_target.insert(indicator.column);
+        const auto refuse = [&](std::size_t column, Place place, const FoundConstruct& found) {
+            if (of_target.count(column) > 0)
+                say(place, fmt::format("column {} measures the target {} and cannot also measure {}: it would predict "
+                                       "itself",
+                                       in_quotes(header_[column]), in_quotes(study_.target.text),
+                                       in_quotes(found.construct->name.text)));
+        };
+        for (const FoundConstruct& found : found_.constructs) {
+            if (!found.used || found.is_target) continue;
+            for (const FoundIndicator& indicator : found.indicators) refuse(indicator.column, indicator.place, found);
+            if (found.category) refuse(*found.category, found.construct->category->place, found);
+        }
+        if (found_.segment && of_target.count(*found_.segment) > 0)
+            say(study_.data.segment->column.place,
+                fmt::format("the segment column {} measures the target {}; expected another column: segments cut by the "
+                            "outcome hide what is to be predicted",
+                            in_quotes(header_[*found_.segment]), in_quotes(study_.target.text)));
     }
 
     void say(Place place, std::string message, std::string hint = {}) {

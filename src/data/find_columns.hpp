@@ -31,11 +31,13 @@ struct FoundColumns {
     std::vector<FoundConstruct> constructs;  ///< the study's in file order, then each theory's own
     std::vector<std::size_t> where;          ///< header position of each condition
     std::optional<std::size_t> cluster;
+    std::optional<std::size_t> segment;
 };
 
 /// Throws FaultError with everything that is wrong with the names: no such column (with the nearest), a glob without a
 /// match, a column twice in one construct (by whatever names: a slip, since it would count double), a reversal of a
-/// column that is no indicator of its construct.
+/// column that is no indicator of its construct, a column of the target that also measures another used construct or
+/// makes the segments.
 FoundColumns find_columns(const Study& study, const std::vector<std::string>& header);
 
 /// Whether `*` in the pattern, standing for any characters or none, can make it the name.

@@ -46,6 +46,7 @@ ColumnChoice survey_columns(const Study& study, const std::vector<std::string>& 
     }
     for (const std::size_t column : found.where) choose_once(choice.texts, column);
     if (found.cluster) choose_once(choice.texts, *found.cluster);
+    if (found.segment) choose_once(study.data.segment->cuts.empty() ? choice.texts : choice.numbers, *found.segment);
     return choice;
 }
 

@@ -15,8 +15,8 @@ void copy_column(const double* from, std::span<const std::size_t> rows, const Va
     }
 }
 
-bool is_whole(const Eigen::MatrixXd& source, const std::vector<ValueColumn>& columns) {
-    if (static_cast<Eigen::Index>(columns.size()) != source.cols()) return false;
+bool are_first(const Eigen::MatrixXd& source, const std::vector<ValueColumn>& columns) {
+    if (static_cast<Eigen::Index>(columns.size()) > source.cols()) return false;
     for (std::size_t i = 0; i < columns.size(); ++i)
         if (columns[i].source != static_cast<Eigen::Index>(i)) return false;
     return true;
@@ -36,14 +36,14 @@ Eigen::MatrixXd gather_values(const Eigen::MatrixXd& source, std::span<const std
 
 Eigen::MatrixXd take_values(Eigen::MatrixXd&& source, std::span<const std::size_t> rows,
                             const std::vector<ValueColumn>& columns) {
-    if (!is_whole(source, columns)) return gather_values(source, rows, columns);
+    if (!are_first(source, columns)) return gather_values(source, rows, columns);
     Eigen::MatrixXd values = std::move(source);
     const auto n_old = static_cast<std::size_t>(values.rows());
     const bool same_rows = rows.size() == n_old;
     for (std::size_t i = 0; i < columns.size(); ++i)
         if (!same_rows || columns[i].reversed)
             copy_column(values.data() + i * n_old, rows, columns[i], values.data() + i * rows.size());
-    if (same_rows) return values;
+    if (same_rows && static_cast<Eigen::Index>(columns.size()) == values.cols()) return values;
     // Seen as one long row, the matrix can be cut without a copy.
     const auto n_rows = static_cast<Eigen::Index>(rows.size());
     const auto n_columns = static_cast<Eigen::Index>(columns.size());

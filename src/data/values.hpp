@@ -21,7 +21,7 @@ struct ValueColumn {
 Eigen::MatrixXd gather_values(const Eigen::MatrixXd& source, std::span<const std::size_t> rows,
                               const std::vector<ValueColumn>& columns);
 
-/// The same without a second matrix, if the columns are those of the source in its order; else a copy.
+/// The same without a second matrix, if the columns are the first of the source in its order; else a copy.
 Eigen::MatrixXd take_values(Eigen::MatrixXd&& source, std::span<const std::size_t> rows,
                             const std::vector<ValueColumn>& columns);
 

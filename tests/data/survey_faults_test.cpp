@@ -132,6 +132,44 @@ TEST_CASE("a column that is constant over the rows used is a fault", "[data]") {
           "      |                           ^");
 }
 
+TEST_CASE("a column of the target may measure nothing else that is used", "[data]") {
+    CHECK(faults_between(R"(constructs:
+  skill: {indicators: [a, "d*"]}
+  pace: {indicators: [d1]}
+  sector: {category: d2}
+  mood: {indicators: [d1]}
+  delivery: {indicators: [d1, d2]}
+controls: [pace, sector]
+)",
+                         "a,d1,d2\n1,1,1\n2,3,4\n", "    constructs: {skill: {indicators: [d2]}}\n") ==
+          "study.yaml:5:27: error: column \"d1\" measures the target \"delivery\" and cannot also measure \"skill\": it would "
+          "predict itself\n"
+          "    5 |   skill: {indicators: [a, \"d*\"]}\n"
+          "      |                           ^\n"
+          "study.yaml:5:27: error: column \"d2\" measures the target \"delivery\" and cannot also measure \"skill\": it would "
+          "predict itself\n"
+          "    5 |   skill: {indicators: [a, \"d*\"]}\n"
+          "      |                           ^\n"
+          "study.yaml:6:23: error: column \"d1\" measures the target \"delivery\" and cannot also measure \"pace\": it would "
+          "predict itself\n"
+          "    6 |   pace: {indicators: [d1]}\n"
+          "      |                       ^\n"
+          "study.yaml:7:22: error: column \"d2\" measures the target \"delivery\" and cannot also measure \"sector\": it would "
+          "predict itself\n"
+          "    7 |   sector: {category: d2}\n"
+          "      |                      ^\n"
+          "study.yaml:16:39: error: column \"d2\" measures the target \"delivery\" and cannot also measure \"skill\": it "
+          "would predict itself\n"
+          "   16 |     constructs: {skill: {indicators: [d2]}}\n"
+          "      |                                       ^");
+}
+
+TEST_CASE("antecedents may share a column", "[data]") {
+    CHECK(faults_between("constructs:\n  skill: {indicators: [a, b]}\n  pace: {indicators: [b]}\n  delivery: {indicators: [d]}\n"
+                         "controls: [pace]\n",
+                         "a,b,d\n1,1,1\n2,3,4\n") == "nothing thrown");
+}
+
 TEST_CASE("a category needs two levels and at most fifty", "[data]") {
     constexpr const char* kSector =
         "constructs:\n  skill: {indicators: [a]}\n  sector: {category: k}\n  delivery: {indicators: [d]}\ncontrols: [sector]\n";
