@@ -48,9 +48,20 @@ Json weights(const TheoryReport& theory) {
     return list;
 }
 
-Json fitted(const InSample& in) {
-    return {{"r2", number(in.r2)}, {"adjusted_r2", number(in.adjusted_r2)}, {"sse", number(in.sse)}, {"coefficients_count", in.coefficients},
+std::string why_not(const TheoryReport& theory) {
+    const InSample& in = theory.fitted;
+    if (!std::isfinite(in.r2)) return theory.criteria.reason;
+    if (std::isfinite(in.f) && std::isfinite(in.adjusted_r2)) return {};
+    if (in.f_df2 <= 0) return "no residual degrees of freedom";
+    return in.f_df1 <= 0 ? "the equation has no terms that vary" : "the equation fits every row exactly";
+}
+
+Json fitted(const TheoryReport& theory) {
+    const InSample& in = theory.fitted;
+    Json out = {{"r2", number(in.r2)}, {"adjusted_r2", number(in.adjusted_r2)}, {"sse", number(in.sse)}, {"coefficients_count", in.coefficients},
             {"f", number(in.f)}, {"f_df", {number(in.f_df1), number(in.f_df2)}}, {"f_p", number(in.f_p)}};
+    if (const std::string reason = why_not(theory); !reason.empty()) out["reason"] = reason;
+    return out;
 }
 
 Json criteria(const Criteria& c) {
@@ -78,7 +89,7 @@ Json theory(const Outcome& outcome, const TheoryReport& report) {
     Json out = {{"name", losses.name}, {"claim", outcome.trial.theories[report.contestant]->blueprint().claim}, {"rank", report.rank > 0 ? Json(report.rank) : Json(nullptr)}};
     if (losses.failed) out["failed"] = losses.reason;
     out["heldout"] = heldout(losses);
-    out["fitted"] = fitted(report.fitted);
+    out["fitted"] = fitted(report);
     out["criteria"] = criteria(report.criteria);
     out["equations"] = equations(report);
     out["weights"] = weights(report);

@@ -11,7 +11,8 @@ leaves the old folder or the new one, never half of one.
 
 Files
    results.json    everything below, at full double precision (17 digits)
-   ranking.csv     the ranked table, one theory or benchmark a line
+   ranking.csv     the ranked table, one contestant a line; kind: theory or
+                   benchmark
    pairs.csv       one pair of contestants a line, with both tests
    indicators.csv  held-out errors of each target item, one contestant and item
                    a line, in the item's own units
@@ -94,6 +95,7 @@ results.json (schema 1)
                      practically equal, or unresolved
    verdict           the headline of the whole contest, one sentence
    advice            list of sentences, as printed on standard error
+   caution           what the contest cannot show
 
 Exit statuses
    0 done   1 the study or the data is wrong (message on standard error, nothing
