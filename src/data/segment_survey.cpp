@@ -31,8 +31,7 @@ void take_codes(const std::vector<int>& codes, const std::vector<std::string>& n
         number[name] = static_cast<int>(new_names.size());
         new_names.push_back(names[name]);
     }
-    for (const std::size_t position : positions)
-        new_codes.push_back(number[static_cast<std::size_t>(codes[position])]);
+    for (const std::size_t position : positions) new_codes.push_back(number[static_cast<std::size_t>(codes[position])]);
 }
 
 /// What does not vary within a segment, each at its place in the study.
@@ -64,12 +63,12 @@ private:
             return false;
         });
         if (construct == nullptr) return;
-        std::string what = fmt::format("column {} of construct {}", in_quotes(variable.column),
-                                       in_quotes(construct->name.text));
+        std::string what =
+            fmt::format("column {} of construct {}", in_quotes(variable.column), in_quotes(construct->name.text));
         if (spread.low > spread.high) {
             say(place_in(*construct, variable.column),
-                fmt::format("{} holds no answer in any of the {} rows of {}; leave it out or choose other segments", what,
-                            part_.n(), called_));
+                fmt::format("{} holds no answer in any of the {} rows of {}; leave it out or choose other segments",
+                            what, part_.n(), called_));
             return;
         }
         const double raw = variable.reversed ? variable.reflect - spread.low : spread.low;
@@ -82,8 +81,8 @@ private:
     void check_category(std::size_t i) {
         const Category& category = part_.categories[i];
         if (category.levels.size() != 1) return;
-        const Construct* construct = owner(
-            [&](const Measurement& measurement) { return measurement.category == static_cast<int>(i); });
+        const Construct* construct =
+            owner([&](const Measurement& measurement) { return measurement.category == static_cast<int>(i); });
         if (construct == nullptr) return;
         say(construct->category->place,
             fmt::format("category {} is {} in all {} rows of {}; leave it out or choose other segments: one level says "

@@ -47,8 +47,8 @@ std::string between(const std::string& column, const std::vector<double>& cuts, 
 
 }  // namespace
 
-Segments segments_by_value(const Study& study, const std::vector<std::string>& cells,
-                           std::span<const std::size_t> rows, std::vector<Fault>& faults) {
+Segments segments_by_value(const Study& study, const std::vector<std::string>& cells, std::span<const std::size_t> rows,
+                           std::vector<Fault>& faults) {
     Levels levels = code_levels(cells, rows);
     const std::string& column = column_of(study).text;
     if (levels.names.size() == 1)

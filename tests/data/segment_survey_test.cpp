@@ -2,7 +2,9 @@
 #include "studies.hpp"
 #include "support/catch.hpp"
 
+#include <algorithm>
 #include <cmath>
+#include <random>
 
 using namespace rivalfold;
 using Texts = std::vector<std::string>;
@@ -86,20 +88,24 @@ TEST_CASE("what does not vary within a segment is a fault that names it, raw val
     const std::string rows =
         "a,b,trade,d,kind\n1,2,navy,1,x\n2,2,navy,1,x\n3,2,navy,1,x\n3,1,cargo,4,y\n4,5,ferry,4,y\n";
     CHECK(faults_in_segment(study, rows, 0) ==
-          "study.yaml:5:27: error: column \"b\" of construct \"skill\" is 2 in all 3 rows of the segment \"kind: x\"; leave it "
+          "study.yaml:5:27: error: column \"b\" of construct \"skill\" is 2 in all 3 rows of the segment \"kind: x\"; "
+          "leave it "
           "out or choose other segments: a constant says nothing about differences\n"
           "    5 |   skill: {indicators: [a, b], reversed: [b], range: [1, 7]}\n"
           "      |                           ^\n"
-          "study.yaml:7:27: error: column \"d\" of construct \"delivery\" is 1 in all 3 rows of the segment \"kind: x\"; leave "
+          "study.yaml:7:27: error: column \"d\" of construct \"delivery\" is 1 in all 3 rows of the segment \"kind: "
+          "x\"; leave "
           "it out or choose other segments: a constant says nothing about differences\n"
           "    7 |   delivery: {indicators: [d]}\n"
           "      |                           ^\n"
-          "study.yaml:6:22: error: category \"trade\" is \"navy\" in all 3 rows of the segment \"kind: x\"; leave it out or "
+          "study.yaml:6:22: error: category \"trade\" is \"navy\" in all 3 rows of the segment \"kind: x\"; leave it "
+          "out or "
           "choose other segments: one level says nothing about differences\n"
           "    6 |   sector: {category: trade}\n"
           "      |                      ^");
     CHECK(faults_in_segment(study, rows, 1) ==
-          "study.yaml:7:27: error: column \"d\" of construct \"delivery\" is 4 in all 2 rows of the segment \"kind: y\"; leave "
+          "study.yaml:7:27: error: column \"d\" of construct \"delivery\" is 4 in all 2 rows of the segment \"kind: "
+          "y\"; leave "
           "it out or choose other segments: a constant says nothing about differences\n"
           "    7 |   delivery: {indicators: [d]}\n"
           "      |                           ^");
@@ -108,18 +114,21 @@ TEST_CASE("what does not vary within a segment is a fault that names it, raw val
 TEST_CASE("a column without an answer within a segment is a fault under rows: mean", "[data]") {
     const Study study = study_with("rows: mean, segment: kind");
     CHECK(faults_in_segment(study, "a,b,trade,d,kind\n1,,navy,1,x\n2,,cargo,2,x\n3,2,navy,3,y\n3,1,cargo,4,y\n", 0) ==
-          "study.yaml:5:27: error: column \"b\" of construct \"skill\" holds no answer in any of the 2 rows of the segment "
+          "study.yaml:5:27: error: column \"b\" of construct \"skill\" holds no answer in any of the 2 rows of the "
+          "segment "
           "\"kind: x\"; leave it out or choose other segments\n"
           "    5 |   skill: {indicators: [a, b], reversed: [b], range: [1, 7]}\n"
           "      |                           ^");
 }
 
 TEST_CASE("a column that a theory measures its own way is faulted where that theory names it", "[data]") {
-    const Study study = study_of("constructs:\n  skill: {indicators: [a]}\n  delivery: {indicators: [d]}\n"
-                                 "data: {segment: {column: k, cuts: [2]}}\n",
-                                 "    constructs: {skill: {indicators: [\"b*\"]}}\n");
+    const Study study = study_of(
+        "constructs:\n  skill: {indicators: [a]}\n  delivery: {indicators: [d]}\n"
+        "data: {segment: {column: k, cuts: [2]}}\n",
+        "    constructs: {skill: {indicators: [\"b*\"]}}\n");
     CHECK(faults_in_segment(study, "a,b1,d,k\n1,2,1,1\n2,2,2,2\n3,3,4,3\n4,4,5,4\n", 0) ==
-          "study.yaml:12:39: error: column \"b1\" of construct \"skill\" is 2 in all 2 rows of the segment \"k <= 2\"; leave it "
+          "study.yaml:12:39: error: column \"b1\" of construct \"skill\" is 2 in all 2 rows of the segment \"k <= 2\"; "
+          "leave it "
           "out or choose other segments: a constant says nothing about differences\n"
           "   12 |     constructs: {skill: {indicators: [\"b*\"]}}\n"
           "      |                                       ^");
@@ -136,7 +145,43 @@ TEST_CASE("a segment of one row is faulted as that alone", "[data]") {
 TEST_CASE("a segment that the survey does not have is a mistake of the caller", "[data]") {
     const Study study = study_with("segment: kind");
     Survey whole = survey_of(study, kRows);
-    CHECK_THROWS_WITH(survey_of_segment(study, whole, 2), "segment 2 of a survey with 2 segments, 5 rows and 5 rows of values");
+    CHECK_THROWS_WITH(survey_of_segment(study, whole, 2),
+                      "segment 2 of a survey with 2 segments, 5 rows and 5 rows of values");
     whole.values.resize(0, 0);
-    CHECK_THROWS_WITH(survey_of_segment(study, whole, 0), "segment 0 of a survey with 2 segments, 5 rows and 0 rows of values");
+    CHECK_THROWS_WITH(survey_of_segment(study, whole, 0),
+                      "segment 0 of a survey with 2 segments, 5 rows and 0 rows of values");
+}
+
+TEST_CASE("whatever the bytes, the segments of a survey share out its rows", "[data]") {
+    const std::string start = kRows;
+    for (const std::string segment : {"kind", "{column: a, cuts: [2, 4]}"}) {
+        const Study study = study_with("rows: mean, cluster: yard, segment: " + segment);
+        std::mt19937 random(11);
+        int n_parts = 0;
+        for (int trial = 0; trial < 2000; ++trial) {
+            std::string text = start;
+            for (std::size_t edits = 1 + random() % 3; edits > 0; --edits)
+                text[25 + random() % (text.size() - 25)] = start[random() % start.size()];
+            Survey whole;
+            if (faults_of([&] { whole = survey_of(study, text); }) != "nothing thrown") continue;
+            REQUIRE(whole.segments.size() == whole.n());
+            Numbers rows;
+            bool all = true;
+            for (std::size_t i = 0; i < whole.segment_names.size(); ++i) {
+                Survey part;
+                if (faults_of([&] { part = survey_of_segment(study, whole, i); }) != "nothing thrown") {
+                    all = false;
+                    continue;
+                }
+                ++n_parts;
+                rows.insert(rows.end(), part.rows.begin(), part.rows.end());
+                REQUIRE(part.clusters.size() == part.n());
+                for (const int code : part.categories[0].codes)
+                    REQUIRE(static_cast<std::size_t>(code) < part.categories[0].levels.size());
+            }
+            std::sort(rows.begin(), rows.end());
+            if (all) REQUIRE(rows == whole.rows);
+        }
+        CHECK(n_parts > 300);
+    }
 }
