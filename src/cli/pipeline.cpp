@@ -2,10 +2,12 @@
 #include "rivalfold/data/sha256.hpp"
 #include "rivalfold/report/results_folder.hpp"
 #include "rivalfold/verdict/advice.hpp"
+#include "rivalfold/verdict/reversals.hpp"
 
 #include <fmt/chrono.h>
 #include <fmt/format.h>
 
+#include <algorithm>
 #include <chrono>
 #include <ctime>
 #include <thread>
@@ -33,13 +35,17 @@ std::vector<Reliability> measure_reliabilities(const Study& study, const Survey&
     return out;
 }
 
-/// Every stage in order, its locals the stages' results.
-Outcome run_stages(const Study& study, const RunSettings& settings, bool with_contest) {
-    const auto begun = std::chrono::steady_clock::now();
-    Outcome outcome;
-    outcome.run = open_record(study, settings);
-    outcome.study = study;
-    outcome.survey = read_survey(study);
+/// What holds in a segment but not in the whole sample, under the segment's name.
+void add_segment_advice(Outcome& outcome) {
+    for (const Outcome& segment : outcome.segments)
+        for (const std::string& item : segment.advice)
+            if (std::find(outcome.advice.begin(), outcome.advice.end(), item) == outcome.advice.end())
+                outcome.advice.push_back(fmt::format("Segment \"{}\": {}", segment.segment_name, item));
+}
+
+/// From a survey to its verdict: every stage in order. `outcome` holds study, run and survey; the rest is filled in.
+void run_stages(Outcome& outcome, const RunSettings& settings, bool with_contest) {
+    const Study& study = outcome.study;
     outcome.sample = std::make_shared<Sample>(build_sample(outcome.survey));
     outcome.survey.values.resize(0, 0);
     outcome.plan = plan_folds(study, outcome.survey);
@@ -47,20 +53,51 @@ Outcome run_stages(const Study& study, const RunSettings& settings, bool with_co
     outcome.trial = with_contest ? run_trial(study, outcome.survey, *outcome.sample, outcome.plan, outcome.run.threads, settings.progress)
                                  : fit_all_rows(study, outcome.survey, *outcome.sample, outcome.run.threads);
     outcome.advice = advise_on_study(study, outcome.survey, *outcome.sample, outcome.plan, outcome.trial);
-    if (with_contest) {
-        outcome.verdict = reach_verdict(study, outcome.survey, outcome.trial);
-        const std::vector<std::string> more = advise_on_outcome(study, outcome.survey, outcome.trial, outcome.verdict);
-        outcome.advice.insert(outcome.advice.end(), more.begin(), more.end());
+    if (!with_contest) return;
+    outcome.verdict = reach_verdict(study, outcome.survey, *outcome.sample, outcome.trial);
+    const std::vector<std::string> more = advise_on_outcome(study, outcome.survey, outcome.trial, outcome.verdict);
+    outcome.advice.insert(outcome.advice.end(), more.begin(), more.end());
+}
+
+/// The same contest within one segment; faults and advice say which.
+Outcome run_segment(const Outcome& whole, Survey survey, const std::string& name, const RunSettings& settings, bool with_contest) {
+    Outcome segment;
+    segment.study = whole.study;
+    segment.run = whole.run;
+    segment.segment_name = name;
+    segment.survey = std::move(survey);
+    try {
+        run_stages(segment, settings, with_contest);
+    } catch (const FaultError& error) {
+        std::vector<Fault> faults = error.faults();
+        for (Fault& fault : faults) fault.message = fmt::format("in the segment \"{}\": {}", name, fault.message);
+        throw FaultError(std::move(faults));
     }
+    return segment;
+}
+
+Outcome run_study(const Study& study, const RunSettings& settings, bool with_contest) {
+    const auto begun = std::chrono::steady_clock::now();
+    Outcome outcome;
+    outcome.run = open_record(study, settings);
+    outcome.study = study;
+    outcome.survey = read_survey(study);
+    std::vector<Survey> parts;
+    for (std::size_t s = 0; s < outcome.survey.segment_names.size(); ++s) parts.push_back(survey_of_segment(study, outcome.survey, s));
+    run_stages(outcome, settings, with_contest);
+    for (std::size_t s = 0; s < parts.size(); ++s)
+        outcome.segments.push_back(run_segment(outcome, std::move(parts[s]), outcome.survey.segment_names[s], settings, with_contest));
+    add_segment_advice(outcome);
+    if (with_contest) outcome.reversals = find_reversals(outcome);
     outcome.run.seconds = std::chrono::duration<double>(std::chrono::steady_clock::now() - begun).count();
     return outcome;
 }
 
 }  // namespace
 
-Outcome run_contest(const Study& study, const RunSettings& settings) { return run_stages(study, settings, true); }
+Outcome run_contest(const Study& study, const RunSettings& settings) { return run_study(study, settings, true); }
 
-Outcome check_contest(const Study& study, const RunSettings& settings) { return run_stages(study, settings, false); }
+Outcome check_contest(const Study& study, const RunSettings& settings) { return run_study(study, settings, false); }
 
 void save_contest(const Outcome& outcome, const std::string& folder) { save_results(outcome, folder); }
 

@@ -36,6 +36,14 @@ std::uint64_t RandomStream::below(std::uint64_t bound) {
     }
 }
 
+std::uint32_t RandomStream::below_small(std::uint32_t bound) {
+    const std::uint32_t reject_below = (0 - bound) % bound;
+    for (;;) {
+        const std::uint64_t product = static_cast<std::uint64_t>(next32()) * bound;
+        if (static_cast<std::uint32_t>(product) >= reject_below) return static_cast<std::uint32_t>(product >> 32);
+    }
+}
+
 double RandomStream::unit() { return static_cast<double>(next64() >> 11) * 0x1p-53; }
 
 std::vector<std::uint32_t> shuffled(std::size_t n, RandomStream& stream) {

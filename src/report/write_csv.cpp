@@ -35,7 +35,8 @@ void append(std::string& line, std::size_t value) {
 }  // namespace
 
 void write_ranking_csv(const Outcome& outcome, const Sink& sink) {
-    put({"rank", "name", "kind", "loss", "rmse", "mae", "q2", "r2", "adjusted_r2", "sse", "coefficients_count", "aic", "aicc", "bic", "hq", "gm", "bic_weight", "verdict"}, sink);
+    put({"rank", "name", "kind", "loss", "rmse", "mae", "q2", "r2", "adjusted_r2", "sse", "coefficients_count", "aic", "aicc", "bic", "hq", "gm", "bic_weight", "explained", "first_share", "p_set_range", "p_set_max",
+         "verdict"}, sink);
     for (const std::size_t c : table_order(outcome)) {
         const ContestantLosses& losses = outcome.trial.contestants[c];
         Cells cells;
@@ -50,9 +51,11 @@ void write_ranking_csv(const Outcome& outcome, const Sink& sink) {
             cells.push_back(std::to_string(theory->fitted.coefficients));
             const Criteria& k = theory->criteria;
             for (const double value : {k.aic, k.aicc, k.bic, k.hq, k.gm, k.bic_weight}) cells.push_back(exact(value));
+            cells.push_back(exact(theory->explained));
+            for (const double value : {theory->first_share, theory->p_set_range, theory->p_set_max}) cells.push_back(held(value));
             cells.push_back(csv_field(theory->verdict));
         } else {
-            cells.resize(18);
+            cells.resize(22);
         }
         put(cells, sink);
     }
@@ -62,12 +65,17 @@ void write_pairs_csv(const Outcome& outcome, const Sink& sink) {
     Cells header{"a", "b", "difference", "relative"};
     for (const char* test : {"rows", "corrected"})
         for (const char* field : {"se", "t", "df", "p", "p_holm", "low", "high"}) header.push_back(std::string(test) + "_" + field);
-    header.insert(header.end(), {"verdict", "reason"});
+    header.insert(header.end(), {"p", "p_holm", "low", "high", "monte_carlo_se", "a_knows_more_p", "b_knows_more_p", "inner", "extra_terms_p", "verdict", "reason"});
     put(header, sink);
     for (const PairReport& pair : outcome.verdict.pairs) {
         Cells cells{csv_field(outcome.trial.contestants[pair.a].name), csv_field(outcome.trial.contestants[pair.b].name), exact(pair.difference), exact(pair.relative)};
         for (const PairedTest* test : {&pair.rows, &pair.corrected})
             for (const double value : {test->se, test->t, test->df, test->p, test->p_holm, test->low, test->high}) cells.push_back(exact(value));
+        for (const double value : {pair.p, pair.p_holm, pair.low, pair.high, pair.monte_carlo_se}) cells.push_back(exact(value));
+        cells.push_back(pair.theories ? exact(pair.a_knows_more.p) : "");
+        cells.push_back(pair.theories ? exact(pair.b_knows_more.p) : "");
+        cells.push_back(pair.inner ? csv_field(outcome.trial.contestants[*pair.inner].name) : "");
+        cells.push_back(pair.inner ? exact(pair.extra_terms.p) : "");
         cells.push_back(word(pair.outcome));
         cells.push_back(csv_field(pair.rows.reason.empty() ? pair.corrected.reason : pair.rows.reason));
         put(cells, sink);
@@ -116,12 +124,42 @@ void write_folds_csv(const Outcome& outcome, const Sink& sink) {
     sink(text);
 }
 
+void write_disagreements_csv(const Outcome& outcome, const Sink& sink) {
+    const Disagreement& d = outcome.verdict.disagreement;
+    std::string text = "row,actual";
+    if (!d.present) return sink(text + "\n");
+    const auto column = [&](const char* what, std::size_t c) { text += "," + csv_field(std::string(what) + outcome.trial.contestants[c].name); };
+    for (const char* what : {"predicted: ", "loss: "})
+        for (const std::size_t c : {d.first, d.second}) column(what, c);
+    text += ",difference";
+    for (const std::string& antecedent : d.antecedents) text += "," + csv_field("score: " + antecedent);
+    text += "\n";
+    for (const std::size_t row : d.order) {
+        const auto i = static_cast<Eigen::Index>(row);
+        const double loss_first = outcome.trial.contestants[d.first].row_loss(i), loss_second = outcome.trial.contestants[d.second].row_loss(i);
+        append(text, outcome.survey.rows[row]);
+        for (const double value : {d.actual(i), d.predicted_first(i), d.predicted_second(i), loss_first, loss_second, loss_first - loss_second}) {
+            text += ',';
+            append(text, value);
+        }
+        for (Eigen::Index c = 0; c < d.scores.cols(); ++c) {
+            text += ',';
+            append(text, d.scores(i, c));
+        }
+        text += '\n';
+        if (text.size() < 60000) continue;
+        sink(text);
+        text.clear();
+    }
+    sink(text);
+}
+
 void write_study_yaml(const Outcome& outcome, const Sink& sink) { sink(outcome.study.source); }
 
 const std::vector<ResultFile>& result_files() {
     static const std::vector<ResultFile> files = {
         {"results.json", write_results_json}, {"ranking.csv", write_ranking_csv}, {"pairs.csv", write_pairs_csv},
-        {"indicators.csv", write_indicators_csv}, {"losses.csv", write_losses_csv}, {"folds.csv", write_folds_csv},
+        {"indicators.csv", write_indicators_csv}, {"losses.csv", write_losses_csv}, {"folds.csv", write_folds_csv}, {"disagreements.csv", write_disagreements_csv},
         {"table.md", write_table_md}, {"study.yaml", write_study_yaml}, {"manifest.json", write_manifest_json}};
     return files;
 }

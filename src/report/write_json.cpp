@@ -93,21 +93,75 @@ Json theory(const Outcome& outcome, const TheoryReport& report) {
     out["criteria"] = criteria(report.criteria);
     out["equations"] = equations(report);
     out["weights"] = weights(report);
+    out["explained"] = number(report.explained);
+    out["first_share"] = losses.failed ? Json(nullptr) : number(report.first_share);
+    out["confidence_set"] = losses.failed ? Json(nullptr) : Json({{"p_range", report.p_set_range}, {"p_max", report.p_set_max}, {"shortlisted", report.shortlisted}});
+    out["optimism"] = report.optimism;
     out["verdict"] = report.verdict;
     return out;
 }
 
-void emit(const Json& json, const Sink& sink) {
-    sink(json.dump(1, ' ', false, Json::error_handler_t::replace));
-    sink("\n");
+Json one_sided(const OneSidedTest& test) {
+    Json out = {{"t", number(test.t)}, {"df", test.df > 0 ? Json(test.df) : Json("normal")}, {"p", number(test.p)}};
+    if (!test.reason.empty()) out["reason"] = test.reason;
+    return out;
 }
 
-}  // namespace
+Json pair_of(const Outcome& outcome, const PairReport& pair) {
+    const ContestantLosses& b = outcome.trial.contestants[pair.b];
+    Json out = {{"a", outcome.trial.contestants[pair.a].name}, {"b", b.name}, {"difference", number(pair.difference)}, {"relative", number(pair.relative)},
+                {"rows", paired_test(pair.rows, b.loss)}, {"corrected", paired_test(pair.corrected, b.loss)}};
+    out["both"] = {{"p", number(pair.p)}, {"p_holm", number(pair.p_holm)}, {"low", number(pair.low)}, {"high", number(pair.high)}};
+    if (const std::string& reason = pair.rows.reason.empty() ? pair.corrected.reason : pair.rows.reason; !reason.empty()) out["both"]["reason"] = reason;
+    out["monte_carlo_se"] = number(pair.monte_carlo_se);
+    if (std::isnan(pair.monte_carlo_se)) out["reason"] = "monte_carlo_se: one repeat has no spread";
+    if (pair.theories) out["encompassing"] = {{"a_knows_more", one_sided(pair.a_knows_more)}, {"b_knows_more", one_sided(pair.b_knows_more)}};
+    if (pair.inner)
+        out["nested"] = {{"inner", outcome.trial.contestants[*pair.inner].name}, {"extra_terms", one_sided(pair.extra_terms)}, {"words", pair.nested_words}};
+    out["verdict"] = word(pair.outcome);
+    return out;
+}
 
-void write_results_json(const Outcome& outcome, const Sink& sink) {
+Json stack(const Outcome& outcome) {
+    const StackReport& report = outcome.verdict.stack;
+    if (!report.present) return nullptr;
+    Json weights = Json::array();
+    for (std::size_t t = 0; t < report.weights.size(); ++t) weights.push_back({{"name", outcome.trial.contestants[t].name}, {"weight", report.weights[t]}});
+    const double best = report.loss - report.difference;
+    return {{"loss", report.loss}, {"weights", std::move(weights)}, {"difference", report.difference}, {"relative", report.relative}, {"rows", paired_test(report.rows, best)},
+            {"corrected", paired_test(report.corrected, best)}, {"complementary", report.complementary}, {"words", report.words}};
+}
+
+Json disagreement(const Outcome& outcome) {
+    const Disagreement& d = outcome.verdict.disagreement;
+    if (!d.present) return nullptr;
+    Json thirds = Json::array();
+    for (const Disagreement::Third& third : d.thirds) {
+        Json one = {{"along", third.along}, {"third", third.third}, {"from", third.from}, {"to", third.to}, {"rows", third.rows}, {"difference", third.difference}, {"se", number(third.se)}};
+        if (std::isnan(third.se)) one["reason"] = "all rows of this third lie in one cluster";
+        thirds.push_back(std::move(one));
+    }
+    return {{"first", outcome.trial.contestants[d.first].name}, {"second", outcome.trial.contestants[d.second].name}, {"thirds", std::move(thirds)}};
+}
+
+Json reversals(const Outcome& outcome) {
+    Json list = Json::array();
+    for (const Reversal& r : outcome.reversals) {
+        Json one = {{"a", outcome.trial.contestants[r.a].name}, {"b", outcome.trial.contestants[r.b].name}, {"first", outcome.segments[r.first].segment_name},
+                    {"second", outcome.segments[r.second].segment_name}, {"difference_first", number(r.difference_first)}, {"difference_second", number(r.difference_second)},
+                    {"difference", number(r.difference)}, {"se", number(r.se)}, {"t", number(r.t)}, {"df", number(r.df)}, {"p", number(r.p)}, {"p_holm", number(r.p_holm)},
+                    {"low", number(r.low)}, {"high", number(r.high)}};
+        if (!r.reason.empty()) one["reason"] = r.reason;
+        list.push_back(std::move(one));
+    }
+    return list;
+}
+
+Json whole_object(const Outcome& outcome) {
     const Study& study = outcome.study;
     const Trial& trial = outcome.trial;
     Json json = {{"rivalfold", outcome.run.version}, {"schema", 1}, {"study", study.title}};
+    if (!outcome.segment_name.empty()) json["segment"] = outcome.segment_name;
     json["data"] = data(outcome);
     json["trial"] = {{"folds", trial.folds}, {"repeats", trial.repeats}, {"seed", study.trial.folds_file ? Json(nullptr) : Json(study.trial.seed)},
                      {"loss", word(study.trial.loss)}, {"mediators", word(study.trial.mediators)}, {"metric", word(study.metric)}};
@@ -118,16 +172,29 @@ void write_results_json(const Outcome& outcome, const Sink& sink) {
     for (const ContestantLosses& losses : trial.contestants)
         if (!losses.is_theory) json["benchmarks"].push_back({{"name", losses.name}, {"heldout", heldout(losses)}});
     json["pairs"] = Json::array();
-    for (const PairReport& pair : outcome.verdict.pairs) {
-        const ContestantLosses& b = trial.contestants[pair.b];
-        json["pairs"].push_back({{"a", trial.contestants[pair.a].name}, {"b", b.name}, {"difference", number(pair.difference)}, {"relative", number(pair.relative)},
-                                 {"rows", paired_test(pair.rows, b.loss)}, {"corrected", paired_test(pair.corrected, b.loss)}, {"verdict", word(pair.outcome)}});
-    }
+    for (const PairReport& pair : outcome.verdict.pairs) json["pairs"].push_back(pair_of(outcome, pair));
+    json["stack"] = stack(outcome);
+    json["disagreement"] = disagreement(outcome);
+    json["winner"] = outcome.verdict.winner ? Json(trial.contestants[*outcome.verdict.winner].name) : Json(nullptr);
     json["verdict"] = outcome.verdict.headline;
+    if (!outcome.segments.empty()) {
+        json["segments"] = Json::array();
+        for (const Outcome& segment : outcome.segments) json["segments"].push_back(whole_object(segment));
+        json["reversals"] = reversals(outcome);
+    }
     json["advice"] = outcome.advice;
-    json["caution"] = caution();
-    emit(json, sink);
+    if (outcome.segment_name.empty()) json["caution"] = caution();
+    return json;
 }
+
+void emit(const Json& json, const Sink& sink) {
+    sink(json.dump(1, ' ', false, Json::error_handler_t::replace));
+    sink("\n");
+}
+
+}  // namespace
+
+void write_results_json(const Outcome& outcome, const Sink& sink) { emit(whole_object(outcome), sink); }
 
 void write_manifest_json(const Outcome& outcome, const Sink& sink) {
     emit({{"rivalfold", outcome.run.version},

@@ -28,26 +28,25 @@ std::string rows_in_words(const Survey& survey) {
     return fmt::format("{} rows read, {} used{}", survey.rows_read, survey.n(), dropped > 0 ? fmt::format(", {} left out", dropped) : "");
 }
 
+std::string failures(const Outcome& outcome, const TerminalStyle& style) {
+    std::string out;
+    for (const ContestantLosses& losses : outcome.trial.contestants)
+        if (losses.failed) out += wrap(fmt::format("\"{}\" failed {}.", plain(losses.name), plain(losses.reason)), static_cast<std::size_t>(style.width), 2) + "\n";
+    return out;
+}
+
 std::string ranked_table(const Outcome& outcome, const TerminalStyle& style) {
-    double least_bic = std::numeric_limits<double>::infinity();
-    for (const TheoryReport& theory : outcome.verdict.theories)
-        if (!std::isnan(theory.criteria.bic)) least_bic = std::min(least_bic, theory.criteria.bic);
-    TextTable table({{"rank", false}, {"theory", true}, {"loss", false}, {"rmse", false}, {"mae", false}, {"q2", false}, {"R2 in", false}, {"dBIC in", false}});
+    TextTable table({{"rank", false}, {"theory", true}, {"loss", false}, {"rmse", false}, {"mae", false}, {"q2", false}, {"fit", false}, {"dBIC", false}, {"p set", false}});
     for (const std::size_t c : outcome.verdict.order) {
         const ContestantLosses& losses = outcome.trial.contestants[c];
         const TheoryReport* theory = losses.is_theory ? &outcome.verdict.theories[c] : nullptr;
         table.add({theory ? std::to_string(theory->rank) : "", (theory ? "" : "~ ") + plain(losses.name), fixed(losses.loss, 4), fixed(losses.rmse, 4), fixed(losses.mae, 4),
-                   fixed(losses.q2, 4), theory ? fixed(theory->fitted.r2, 4) : "", theory ? fixed(theory->criteria.bic - least_bic, 1) : ""});
+                   fixed(losses.q2, 3), theory ? fixed(theory->explained, 3) : "", theory ? fixed(theory->bic_difference, 1) : "", theory ? p_text(theory->p_set_max) : ""});
     }
     for (const TheoryReport& theory : outcome.verdict.theories)
         if (outcome.trial.contestants[theory.contestant].failed)
-            table.add({"-", plain(outcome.trial.contestants[theory.contestant].name), "failed", "-", "-", "-", fixed(theory.fitted.r2, 4), fixed(theory.criteria.bic - least_bic, 1)});
-    std::string out = table.render(static_cast<std::size_t>(style.width));
-    for (const TheoryReport& theory : outcome.verdict.theories)
-        if (outcome.trial.contestants[theory.contestant].failed)
-            out += wrap(fmt::format("\"{}\" failed {}.", plain(outcome.trial.contestants[theory.contestant].name), plain(outcome.trial.contestants[theory.contestant].reason)),
-                        static_cast<std::size_t>(style.width), 2) + "\n";
-    return out;
+            table.add({"-", plain(outcome.trial.contestants[theory.contestant].name), "failed", "-", "-", "-", "-", fixed(theory.bic_difference, 1), "-"});
+    return table.render(static_cast<std::size_t>(style.width)) + failures(outcome, style);
 }
 
 std::string pair_word(const PairReport& pair) {
@@ -64,12 +63,13 @@ std::string percent(double share) { return std::isfinite(share) ? fmt::format("{
 
 std::string pairs_table(const Outcome& outcome, const TerminalStyle& style) {
     TextTable table({{"first", true}, {"second", true}, {"diff %", false}, {"interval %", false}, {"p rows", false}, {"p folds", false}, {"p Holm", false}, {"better", true}});
+    // The rank tells names apart that had to be cut.
+    const auto name = [&](std::size_t c) { return fmt::format("{} {}", outcome.verdict.theories[c].rank, plain(outcome.trial.contestants[c].name)); };
     for (const PairReport& pair : outcome.verdict.pairs) {
         if (!pair.theories) continue;
-        const ContestantLosses& b = outcome.trial.contestants[pair.b];
-        table.add({plain(outcome.trial.contestants[pair.a].name), plain(b.name), percent(pair.relative),
-                   fmt::format("{} .. {}", percent(pair.low / b.loss), percent(pair.high / b.loss)), p_text(pair.rows.p), p_text(pair.corrected.p), p_text(pair.p_holm),
-                   pair_word(pair)});
+        const double b = outcome.trial.contestants[pair.b].loss;
+        table.add({name(pair.a), name(pair.b), percent(pair.relative), fmt::format("{} .. {}", percent(pair.low / b), percent(pair.high / b)), p_text(pair.rows.p),
+                   p_text(pair.corrected.p), p_text(pair.p_holm), pair_word(pair)});
     }
     return table.render(static_cast<std::size_t>(style.width));
 }
@@ -78,11 +78,12 @@ std::string ranked_reading(const Outcome& outcome) {
     const bool squared = outcome.study.trial.loss == Loss::squared;
     std::string text = fmt::format(
         "Loss: mean {} error of held-out rows, each target indicator in units of its own standard deviation; smaller is better. rmse, mae: the same errors in those units. "
-        "q2: share of the training mean's squared error that is avoided; 1 is perfect, 0 or less no better than the mean. R2 in, dBIC in: the fit to all rows used, not prediction. "
+        "q2: share of the training mean's squared error that is avoided; 1 is perfect, 0 or less no better than the mean. fit: the same share for the rows that were fitted; dBIC: "
+        "BIC above the smallest; both describe the sample, not new rows. p set: p in the model confidence set; above {:g} it may be the best. "
         "~ marks a benchmark: beating the training mean shows that there is something to predict; a theory behind the linear benchmark wastes what the indicators hold.",
-        squared ? "squared" : "absolute");
+        squared ? "squared" : "absolute", outcome.study.verdict.level);
     if (outcome.verdict.several_targets)
-        text += " The theories weight the target's indicators differently, so their R2 and BIC describe slightly different target scores; held-out losses do not suffer from that.";
+        text += " The theories weight the target's indicators differently, so their BIC describes slightly different target scores; held-out losses do not suffer from that.";
     return text;
 }
 
@@ -94,6 +95,68 @@ std::string pairs_reading(const Outcome& outcome) {
         100 * (1 - outcome.study.verdict.level), outcome.survey.clusters.empty() ? "rows" : "clusters", outcome.study.verdict.level, 100 * outcome.study.verdict.margin);
 }
 
+const Theory& theory_of(const Study& study, const std::string& name) {
+    return *std::find_if(study.theories.begin(), study.theories.end(), [&](const Theory& theory) { return theory.name.text == name; });
+}
+
+std::string fit_and_prediction(const Outcome& outcome, const TerminalStyle& style) {
+    std::string out;
+    for (const std::size_t c : outcome.verdict.order) {
+        if (!outcome.trial.contestants[c].is_theory) continue;
+        const TheoryReport& theory = outcome.verdict.theories[c];
+        out += wrap(fmt::format("{} {}: {}; first in {:.0f}% of the repeats.", theory.rank, plain(outcome.trial.contestants[c].name), theory.optimism, 100 * theory.first_share),
+                    static_cast<std::size_t>(style.width), 2) + "\n";
+    }
+    return out;
+}
+
+std::string parting(const Outcome& outcome, const TerminalStyle& style) {
+    const Disagreement& d = outcome.verdict.disagreement;
+    const std::string first = plain(outcome.trial.contestants[d.first].name), second = plain(outcome.trial.contestants[d.second].name);
+    TextTable rows({{"row", false}, {"actual", false}, {"first says", false}, {"second says", false}, {"first's loss", false}, {"second's loss", false}});
+    for (std::size_t k = 0; k < std::min<std::size_t>(5, d.order.size()); ++k) {
+        const auto i = static_cast<Eigen::Index>(d.order[k]);
+        rows.add({std::to_string(outcome.survey.rows[d.order[k]]), fixed(d.actual(i), 2), fixed(d.predicted_first(i), 2), fixed(d.predicted_second(i), 2),
+                  fixed(outcome.trial.contestants[d.first].row_loss(i), 3), fixed(outcome.trial.contestants[d.second].row_loss(i), 3)});
+    }
+    std::string out = rows.render(static_cast<std::size_t>(style.width)) + "\n";
+    TextTable thirds({{"mean loss difference", true}, {"lowest third", false}, {"middle third", false}, {"highest third", false}});
+    for (std::size_t k = 0; k + 2 < d.thirds.size(); k += 3) {
+        std::vector<std::string> cells{plain(d.thirds[k].along)};
+        for (std::size_t third = 0; third < 3; ++third) cells.push_back(fmt::format("{} ({})", fixed(d.thirds[k + third].difference, 3), fixed(d.thirds[k + third].se, 3)));
+        thirds.add(std::move(cells));
+    }
+    out += thirds.render(static_cast<std::size_t>(style.width)) + "\n";
+    return out + paragraph(fmt::format("First: \"{}\"; second: \"{}\". Above: the rows whose losses differ most, means of the target's indicators in their own units. Below: loss of the first minus "
+                                       "loss of the second (standard error) by thirds of each antecedent; negative: the first predicts those rows better. A description, not a test.", first, second), style);
+}
+
+std::string segments_table(const Outcome& outcome, const TerminalStyle& style) {
+    std::vector<TextTable::Column> columns{{"theory", true}};
+    for (const Outcome& segment : outcome.segments) columns.push_back({fmt::format("{} (n {})", cut_to(plain(segment.segment_name), 24), segment.survey.n()), false});
+    TextTable table(columns);
+    for (std::size_t t = 0; t < outcome.verdict.theories.size(); ++t) {
+        std::vector<std::string> cells{plain(outcome.trial.contestants[t].name)};
+        for (const Outcome& segment : outcome.segments)
+            cells.push_back(segment.trial.contestants[t].failed ? "failed" : fmt::format("{}: {} (q2 {})", segment.verdict.theories[t].rank, fixed(segment.trial.contestants[t].loss, 4), fixed(segment.trial.contestants[t].q2, 3)));
+        table.add(std::move(cells));
+    }
+    std::string out = table.render(static_cast<std::size_t>(style.width)) + "\n" + paragraph("rank: loss (q2) within each segment, fitted and judged there alone.", style);
+    for (const Outcome& segment : outcome.segments) out += wrap(fmt::format("{}: {}", plain(segment.segment_name), plain(segment.verdict.headline)), static_cast<std::size_t>(style.width), 2) + "\n";
+    for (const Reversal& reversal : outcome.reversals)
+        if (!reversal.words.empty()) out += wrap(plain(reversal.words), static_cast<std::size_t>(style.width), 2) + "\n";
+    return out;
+}
+
+std::string verdict_in_words(const Outcome& outcome, const TerminalStyle& style) {
+    std::string out = paragraph(plain(outcome.verdict.headline), style);
+    for (const PairReport& pair : outcome.verdict.pairs)
+        if (!pair.nested_words.empty()) out += paragraph(plain(pair.nested_words), style);
+    for (const std::string& words : outcome.verdict.encompassing_words) out += paragraph(plain(words), style);
+    if (outcome.verdict.stack.present) out += paragraph(plain(outcome.verdict.stack.words), style);
+    return out;
+}
+
 }  // namespace
 
 std::string_view caution() {
@@ -103,13 +166,19 @@ std::string_view caution() {
 
 std::string write_tables(const Outcome& outcome, const TerminalStyle& style) {
     const Study& study = outcome.study;
-    std::string out = bold(plain(study.title), style) + "\n";
-    out += paragraph(fmt::format("{}; target {} ({} indicator{}); {}.", rows_in_words(outcome.survey), plain(study.target.text), outcome.trial.unit.size(),
-                                 outcome.trial.unit.size() == 1 ? "" : "s", splits_in_words(outcome)), style);
+    std::string out;
+    if (outcome.segment_name.empty()) {
+        out = bold(plain(study.title), style) + "\n";
+        out += paragraph(fmt::format("{}; target {} ({} indicator{}); {}.", rows_in_words(outcome.survey), plain(study.target.text), outcome.trial.unit.size(),
+                                     outcome.trial.unit.size() == 1 ? "" : "s", splits_in_words(outcome)), style);
+    }
     out += "\n" + bold("Ranking by held-out loss", style) + "\n" + ranked_table(outcome, style) + "\n" + paragraph(ranked_reading(outcome), style);
     if (outcome.verdict.pairs.end() != std::find_if(outcome.verdict.pairs.begin(), outcome.verdict.pairs.end(), [](const PairReport& p) { return p.theories; }))
         out += "\n" + bold("Pairs of theories", style) + "\n" + pairs_table(outcome, style) + "\n" + paragraph(pairs_reading(outcome), style);
-    out += "\n" + bold("Verdict", style) + "\n" + paragraph(plain(outcome.verdict.headline), style);
+    out += "\n" + bold("Fit and prediction", style) + "\n" + fit_and_prediction(outcome, style);
+    if (outcome.verdict.disagreement.present) out += "\n" + bold("Where the first two part", style) + "\n" + parting(outcome, style);
+    if (!outcome.segments.empty()) out += "\n" + bold("Segments", style) + "\n" + segments_table(outcome, style);
+    out += "\n" + bold("Verdict", style) + "\n" + verdict_in_words(outcome, style);
     out += paragraph(caution(), style);
     return out;
 }
@@ -152,33 +221,35 @@ std::string write_plan(const Outcome& outcome, const TerminalStyle& style) {
     for (const auto& theory : outcome.trial.theories) {
         const Blueprint& plan = theory->blueprint();
         out += wrap(plain(plan.name) + (plan.claim.empty() ? "" : ": " + plain(plan.claim)), width, 2) + "\n";
-        for (const int e : plan.file_order) {
-            const EquationPlan& equation = plan.equations[static_cast<std::size_t>(e)];
+        for (const Equation& equation : theory_of(study, plan.name).equations) {
             std::string terms;
-            for (const DesignColumn& column : equation.columns) terms += (terms.empty() ? "" : " + ") + plain(column.label);
-            out += "  " + wrap(fmt::format("{} = {}", plain(equation.outcome_name), terms), width - 2, 6) + "\n";
+            for (const Term& term : equation.terms) terms += (terms.empty() ? "" : " + ") + plain(describe(term));
+            for (const Name& control : study.controls)
+                if (equation.outcome.text == study.target.text) terms += " + " + plain(control.text);
+            out += "  " + wrap(fmt::format("{} = {}", plain(equation.outcome.text), terms), width - 2, 6) + "\n";
         }
     }
     return out;
 }
 
 void write_table_md(const Outcome& outcome, const Sink& sink) {
-    sink("| Rank | Theory | Loss | RMSE | MAE | Q² | R² (in sample) | ΔBIC | Verdict |\n| ---: | :--- | ---: | ---: | ---: | ---: | ---: | ---: | :--- |\n");
-    double least_bic = std::numeric_limits<double>::infinity();
-    for (const TheoryReport& theory : outcome.verdict.theories)
-        if (!std::isnan(theory.criteria.bic)) least_bic = std::min(least_bic, theory.criteria.bic);
+    sink("| Rank | Theory | Loss | RMSE | MAE | Q² | Fit (in sample) | R² (in sample) | ΔBIC | p (set) | Verdict |\n"
+         "| ---: | :--- | ---: | ---: | ---: | ---: | ---: | ---: | ---: | ---: | :--- |\n");
     const auto line = [&](std::size_t c) {
         const ContestantLosses& losses = outcome.trial.contestants[c];
         const TheoryReport* theory = losses.is_theory ? &outcome.verdict.theories[c] : nullptr;
         const auto held = [&](double value, int decimals) { return losses.failed ? std::string("-") : fixed(value, decimals); };
-        sink(fmt::format("| {} | {} | {} | {} | {} | {} | {} | {} | {} |\n", theory && theory->rank > 0 ? std::to_string(theory->rank) : "",
-                         theory ? markdown_cell(losses.name) : "*" + markdown_cell(losses.name) + "*", held(losses.loss, 4), held(losses.rmse, 4), held(losses.mae, 4), held(losses.q2, 4),
-                         theory ? fixed(theory->fitted.r2, 4) : "", theory ? fixed(theory->criteria.bic - least_bic, 1) : "", theory ? markdown_cell(theory->verdict) : "benchmark"));
+        std::string in_sample = "| | | | | benchmark |";
+        if (theory)
+            in_sample = fmt::format("| {} | {} | {} | {} | {} |", held(theory->explained, 3), fixed(theory->fitted.r2, 3), fixed(theory->bic_difference, 1),
+                                    losses.failed ? "-" : p_text(theory->p_set_max), markdown_cell(theory->verdict));
+        sink(fmt::format("| {} | {} | {} | {} | {} | {} {}\n", theory && theory->rank > 0 ? std::to_string(theory->rank) : "",
+                         theory ? markdown_cell(losses.name) : "*" + markdown_cell(losses.name) + "*", held(losses.loss, 4), held(losses.rmse, 4), held(losses.mae, 4), held(losses.q2, 3), in_sample));
     };
     for (const std::size_t c : outcome.verdict.order) line(c);
     for (std::size_t c = 0; c < outcome.trial.contestants.size(); ++c)
         if (outcome.trial.contestants[c].failed) line(c);
-    sink(fmt::format("\n*Note.* {} rows used; {}. {}\n\n{} {}\n", outcome.survey.n(), markdown_cell(splits_in_words(outcome)),
+    sink(fmt::format("\n*Note.* {} rows used; {}. {} R²: share of the target score's variance in the fitted sample.\n\n{} {}\n", outcome.survey.n(), markdown_cell(splits_in_words(outcome)),
                      markdown_cell(ranked_reading(outcome)), markdown_cell(outcome.verdict.headline), caution()));
 }
 

@@ -30,11 +30,15 @@ std::vector<std::unique_ptr<Contestant>> WholeFits::fit_all_rows(Trial& trial) {
     for (const Blueprint& blueprint : blueprints) {
         auto whole = std::make_shared<TheoryContestant>(sample_, blueprint, true);
         settle_shifts(*whole);
-        WholeFit fitted{std::move(engine_.fit_whole(whole_, {whole.get()}).fits.front()), false, {}};
+        WholeFit fitted;
+        fitted.fit = std::move(engine_.fit_whole(whole_, {whole.get()}).fits.front());
         fitted.failed = fitted.fit.status != FitStatus::fitted;
         fitted.reason = fitted.fit.reason;
         auto folded = std::make_unique<TheoryContestant>(sample_, blueprint, false);
-        if (!fitted.failed) folded->set_shifts(fitted.fit);
+        if (!fitted.failed) {
+            folded->set_shifts(fitted.fit);
+            fitted.explained = explained_share(*whole, fitted.fit, trial.unit);
+        }
         trial.theories.push_back(std::move(whole));
         trial.whole.push_back(std::move(fitted));
         contestants.push_back(std::move(folded));
@@ -42,6 +46,17 @@ std::vector<std::unique_ptr<Contestant>> WholeFits::fit_all_rows(Trial& trial) {
     contestants.push_back(std::make_unique<TrainingMean>(target_columns));
     contestants.push_back(std::make_unique<LinearBenchmark>(sample_, target_columns, trial.benchmark_predictors));
     return contestants;
+}
+
+double WholeFits::explained_share(const TheoryContestant& theory, const Fit& fit, const Eigen::VectorXd& unit) {
+    const std::vector<std::uint32_t> one_fold(static_cast<std::size_t>(sample_.n), 0);
+    std::vector<std::vector<SplitFits>> fits(1, std::vector<SplitFits>(1));
+    fits.front().front().fits.push_back(fit);
+    const LossRule rule{false, unit.cwiseInverse(), theory.blueprint().target_columns(), {-1}};
+    Eigen::VectorXd row_loss = Eigen::VectorXd::Zero(sample_.n);
+    std::vector<std::vector<SplitErrors>> errors;
+    engine_.predict({{one_fold, 0, 1, 0}}, fits, {&theory}, rule, {{row_loss.data(), nullptr}}, errors);
+    return 1 - row_loss.sum() / static_cast<double>(sample_.n - 1);
 }
 
 // Products of raw scores lie far from 0; a first fit tells where, the second loses no digits to it.

@@ -22,6 +22,7 @@ public:
 
 private:
     void settle_shifts(TheoryContestant& theory);
+    double explained_share(const TheoryContestant& theory, const Fit& fit, const Eigen::VectorXd& unit);
 
     const Study& study_;
     const Survey& survey_;

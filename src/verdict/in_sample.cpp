@@ -137,6 +137,7 @@ void weigh_by_bic(std::vector<TheoryReport>& theories) {
         if (!std::isnan(theory.criteria.bic)) least = std::min(least, theory.criteria.bic);
     for (const TheoryReport& theory : theories)
         if (!std::isnan(theory.criteria.bic)) sum += std::exp(-(theory.criteria.bic - least) / 2);
+    for (TheoryReport& theory : theories) theory.bic_difference = theory.criteria.bic - least;  // NaN stays NaN
     for (TheoryReport& theory : theories)
         theory.criteria.bic_weight = std::isnan(theory.criteria.bic) ? kNaN : std::exp(-(theory.criteria.bic - least) / 2) / sum;
 }

@@ -1,7 +1,11 @@
 #include "rivalfold/verdict/verdict.hpp"
 
+#include "rivalfold/trial/standard_error.hpp"
 #include "rivalfold/verdict/distributions.hpp"
+#include "verdict/companions.hpp"
+#include "verdict/disagreement.hpp"
 #include "verdict/in_sample.hpp"
+#include "verdict/words.hpp"
 
 #include <fmt/format.h>
 
@@ -73,62 +77,48 @@ void decide(const Trial& trial, const VerdictRules& rules, PairReport& pair) {
 }
 
 /// The best-ranked theory, if it beats every rival with the unadjusted larger p (intersection-union test, Berger 1982).
-void name_winner(const Study& study, const Trial& trial, Verdict& verdict) {
-    std::vector<std::size_t> ranked;
-    for (const std::size_t c : verdict.order)
-        if (trial.contestants[c].is_theory) ranked.push_back(c);
-    if (ranked.empty()) {
-        verdict.headline = "No theory could be fitted in every split, so there is nothing to compare.";
-        return;
-    }
-    const std::string& best = trial.contestants[ranked.front()].name;
-    bool beats_all = ranked.size() > 1;
-    double largest = 0;
-    std::string unbeaten;
-    for (const PairReport& pair : verdict.pairs) {
-        if (!pair.theories || pair.a != ranked.front()) continue;
-        const bool beaten = pair.p < study.verdict.level && pair.difference < 0 && pair.outcome != PairOutcome::practically_equal;
-        if (beaten)
-            largest = std::max(largest, pair.p);
-        else
-            unbeaten += fmt::format("{}\"{}\"", unbeaten.empty() ? "" : ", ", trial.contestants[pair.b].name);
-        beats_all = beats_all && beaten;
-    }
-    if (ranked.size() == 1) {
-        verdict.headline = fmt::format("Only \"{}\" could be fitted in every split, so it has no rival.", best);
-    } else if (beats_all) {
-        verdict.winner = ranked.front();
-        verdict.headline = fmt::format("\"{}\" predicts held-out rows better than every rival (both tests, largest p = {:.3g}).", best, largest);
-    } else {
-        verdict.headline = fmt::format("No single winner: \"{}\" ranks first, but these data cannot tell it from {}.", best, unbeaten);
+void find_winner(const VerdictRules& rules, const Trial& trial, Verdict& verdict) {
+    const std::vector<std::size_t> ranked = ranked_theories(trial, verdict);
+    if (ranked.size() < 2) return;
+    const bool beats_all = std::all_of(verdict.pairs.begin(), verdict.pairs.end(), [&](const PairReport& pair) {
+        if (!pair.theories || pair.a != ranked.front()) return true;
+        return pair.p < rules.level && pair.difference < 0 && pair.outcome != PairOutcome::practically_equal;
+    });
+    if (beats_all) verdict.winner = ranked.front();
+}
+
+/// Monte Carlo error of a pair's difference: the spread of the repeats' mean differences over sqrt R.
+void add_repeat_spread(const Trial& trial, PairReport& pair) {
+    pair.monte_carlo_se = kNaN;
+    if (trial.repeats < 2) return;
+    pair.monte_carlo_se = standard_error(trial.contestants[pair.a].repeat_loss - trial.contestants[pair.b].repeat_loss, {}, 0);
+}
+
+void share_first_places(const Trial& trial, Verdict& verdict) {
+    const std::vector<std::size_t> ranked = ranked_theories(trial, verdict);
+    for (int r = 0; r < trial.repeats; ++r) {
+        double least = std::numeric_limits<double>::infinity();
+        for (const std::size_t c : ranked) least = std::min(least, trial.contestants[c].repeat_loss(r));
+        std::vector<std::size_t> first;
+        for (const std::size_t c : ranked)
+            if (trial.contestants[c].repeat_loss(r) == least) first.push_back(c);
+        for (const std::size_t c : first) verdict.theories[c].first_share += 1.0 / (static_cast<double>(first.size()) * trial.repeats);
     }
 }
 
-void word_theories(const Trial& trial, Verdict& verdict) {
-    for (std::size_t t = 0; t < verdict.theories.size(); ++t) {
-        TheoryReport& theory = verdict.theories[t];
-        if (trial.contestants[t].failed) {
-            theory.verdict = "failed " + trial.contestants[t].reason;
-            continue;
-        }
-        if (verdict.winner == t) {
-            theory.verdict = "predicts better than every rival";
-            continue;
-        }
-        if (theory.rank == 1) {
-            theory.verdict = "ranks first, without a clear lead";
-            continue;
-        }
-        for (const PairReport& pair : verdict.pairs) {
-            if (!pair.theories || pair.b != t || verdict.theories[pair.a].rank != 1) continue;
-            const std::string& best = trial.contestants[pair.a].name;
-            if (pair.outcome == PairOutcome::practically_equal)
-                theory.verdict = fmt::format("practically equal to \"{}\"", best);
-            else if (pair.outcome == PairOutcome::first_better || verdict.winner)
-                theory.verdict = fmt::format("predicts worse than \"{}\"", best);
-            else
-                theory.verdict = fmt::format("cannot be told from \"{}\"", best);
-        }
+/// The shortlist: theories that may still be the best.
+void make_set(const Study& study, const Survey& survey, const Trial& trial, Verdict& verdict) {
+    for (std::size_t t = 0; t < trial.theories.size(); ++t)
+        if (!trial.contestants[t].failed) verdict.set_members.push_back(t);
+    if (verdict.set_members.empty()) return;
+    Eigen::MatrixXd losses(static_cast<Eigen::Index>(survey.n()), static_cast<Eigen::Index>(verdict.set_members.size()));
+    for (std::size_t k = 0; k < verdict.set_members.size(); ++k) losses.col(static_cast<Eigen::Index>(k)) = trial.contestants[verdict.set_members[k]].row_loss;
+    verdict.set = confidence_set(losses, survey.clusters, survey.cluster_names.size(), study.trial.seed);
+    for (std::size_t k = 0; k < verdict.set_members.size(); ++k) {
+        TheoryReport& theory = verdict.theories[verdict.set_members[k]];
+        theory.p_set_range = verdict.set.range.p[k];
+        theory.p_set_max = verdict.set.maximum.p[k];
+        theory.shortlisted = theory.p_set_max > study.verdict.level;
     }
 }
 
@@ -144,7 +134,7 @@ const char* word(PairOutcome outcome) {
     return "";
 }
 
-Verdict reach_verdict(const Study& study, const Survey& survey, const Trial& trial) {
+Verdict reach_verdict(const Study& study, const Survey& survey, const Sample& sample, const Trial& trial) {
     Verdict verdict;
     verdict.theories.resize(trial.theories.size());
     for (std::size_t t = 0; t < trial.theories.size(); ++t) {
@@ -155,6 +145,7 @@ Verdict reach_verdict(const Study& study, const Survey& survey, const Trial& tri
             verdict.theories[t].criteria = {none, none, none, none, none, none, trial.whole[t].reason};
         } else {
             report_in_sample(survey, trial, t, verdict.theories[t]);
+            verdict.theories[t].explained = trial.whole[t].explained;
         }
     }
     weigh_by_bic(verdict.theories);
@@ -163,7 +154,11 @@ Verdict reach_verdict(const Study& study, const Survey& survey, const Trial& tri
         for (std::size_t j = i + 1; j < verdict.order.size(); ++j)
             verdict.pairs.push_back(compare(trial, survey, verdict.order[i], verdict.order[j], study.verdict.level));
     adjust(verdict.pairs);
-    for (PairReport& pair : verdict.pairs) decide(trial, study.verdict, pair);
+    for (PairReport& pair : verdict.pairs) {
+        decide(trial, study.verdict, pair);
+        add_repeat_spread(trial, pair);
+        add_companions(study, survey, trial, pair);
+    }
     const Eigen::VectorXd* first_weights = nullptr;
     for (std::size_t t = 0; t < trial.theories.size(); ++t) {
         if (trial.whole[t].failed) continue;
@@ -171,8 +166,13 @@ Verdict reach_verdict(const Study& study, const Survey& survey, const Trial& tri
         if (!first_weights) first_weights = &weights;
         if ((weights - *first_weights).cwiseAbs().maxCoeff() > 1e-8) verdict.several_targets = true;
     }
-    name_winner(study, trial, verdict);
-    word_theories(trial, verdict);
+    find_winner(study.verdict, trial, verdict);
+    share_first_places(trial, verdict);
+    make_set(study, survey, trial, verdict);
+    const std::vector<std::size_t> ranked = ranked_theories(trial, verdict);
+    if (!ranked.empty()) verdict.stack = judge_stack(study, survey, trial, ranked.front());
+    if (ranked.size() > 1) verdict.disagreement = find_disagreement(study, survey, sample, trial, ranked[0], ranked[1]);
+    put_into_words(study, survey, trial, verdict);
     return verdict;
 }
 

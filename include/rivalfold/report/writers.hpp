@@ -31,6 +31,7 @@ void write_pairs_csv(const Outcome& outcome, const Sink& sink);
 void write_indicators_csv(const Outcome& outcome, const Sink& sink);
 void write_losses_csv(const Outcome& outcome, const Sink& sink);
 void write_folds_csv(const Outcome& outcome, const Sink& sink);
+void write_disagreements_csv(const Outcome& outcome, const Sink& sink);
 void write_table_md(const Outcome& outcome, const Sink& sink);
 void write_study_yaml(const Outcome& outcome, const Sink& sink);
 void write_manifest_json(const Outcome& outcome, const Sink& sink);

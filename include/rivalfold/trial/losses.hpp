@@ -64,6 +64,7 @@ struct ErrorProducts {
 /// A theory fitted to all rows used: the in-sample side of the run.
 struct WholeFit {
     Fit fit;
+    double explained = 0;  ///< 1 - SSE / SST of the target's indicators, pooled in units u_j, for the rows that were fitted
     bool failed = false;
     std::string reason;
 };

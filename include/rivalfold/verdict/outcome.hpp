@@ -38,6 +38,9 @@ struct Outcome {
     Trial trial;
     Verdict verdict;
     std::vector<std::string> advice;
+    std::string segment_name;        ///< empty for the whole sample
+    std::vector<Outcome> segments;   ///< the contest within each segment; empty without `segment`
+    std::vector<Reversal> reversals;
     RunRecord run;
 };
 
