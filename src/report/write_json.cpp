@@ -128,8 +128,11 @@ Json stack(const Outcome& outcome) {
     Json weights = Json::array();
     for (std::size_t t = 0; t < report.weights.size(); ++t) weights.push_back({{"name", outcome.trial.contestants[t].name}, {"weight", report.weights[t]}});
     const double best = report.loss - report.difference;
-    return {{"loss", report.loss}, {"weights", std::move(weights)}, {"difference", report.difference}, {"relative", report.relative}, {"rows", paired_test(report.rows, best)},
-            {"corrected", paired_test(report.corrected, best)}, {"complementary", report.complementary}, {"words", report.words}};
+    Json rows = paired_test(report.rows, best), corrected = paired_test(report.corrected, best);
+    rows.erase("p_holm");  // one comparison: nothing to adjust for
+    corrected.erase("p_holm");
+    return {{"loss", report.loss}, {"weights", std::move(weights)}, {"difference", report.difference}, {"relative", report.relative}, {"rows", std::move(rows)},
+            {"corrected", std::move(corrected)}, {"complementary", report.complementary}, {"words", report.words}};
 }
 
 Json disagreement(const Outcome& outcome) {

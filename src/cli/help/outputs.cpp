@@ -20,6 +20,10 @@ Files
                    averaged over repeats (in units u_j; see help losses)
    folds.csv       row, repeat, fold: the splits that were used. Give it back as
                    trial: {folds_file: ...} here or feed it to another program
+   disagreements.csv  the two best-ranked theories row by row, largest
+                   difference of losses first: actual and predicted means of the
+                   target's items in their own units, both losses, and the
+                   antecedents' scores (standard units)
    table.md        the ranked table with its notes, in Markdown
    study.yaml      the study as run, byte for byte
    manifest.json   version, SHA-256 of study and data, seed, times, thread count
@@ -76,6 +80,12 @@ results.json (schema 1)
        weight        of the standardised item; the score has standard deviation
                      1
        loading       correlation of the item with the score, all rows used
+     explained       IN-SAMPLE counterpart of q2: share of the items' variance
+                     that the same predictions explain in the rows fitted
+     first_share     share of the repeats in which it had the smallest loss
+     confidence_set  p_range, p_max: its p in the model confidence set by
+                     either statistic; shortlisted: p_max > level
+     optimism        explained beside q2, in words
      verdict         the theory's place in words
    benchmarks        "training mean" and "linear benchmark": name, heldout
    pairs             every pair of contestants in table order, benchmarks
@@ -91,8 +101,35 @@ results.json (schema 1)
                      pair with a benchmark
        low, high     ends of the 1 - level interval of the difference
        relative_low, relative_high     the same ends as shares of b's loss
+     both            the two tests taken together: p, the larger of the two;
+                     p_holm, that p adjusted; low, high, the wider interval
+     monte_carlo_se  how far another set of splits would move the difference:
+                     the spread of the repeats' means over sqrt(repeats); null
+                     with one repeat
+     encompassing    for theories: a_knows_more, b_knows_more, each with t, df,
+                     p (one-sided): does a (b) hold something that the other
+                     lacks?
+     nested          for nested pairs: inner, the theory with fewer terms;
+                     extra_terms, the Clark-West test: t, df ("normal"), p;
+                     words
      verdict         first predicts better, second predicts better,
                      practically equal, or unresolved
+   stack             the stacked combination of theories: loss; weights (name,
+                     weight: means over splits); difference and relative to the
+                     best-ranked theory; rows, corrected: the two tests;
+                     complementary: better by both and by more than `margin`;
+                     words
+   disagreement      first, second: the two best-ranked; thirds: along (an
+                     antecedent, or their spread), third (1 lowest .. 3
+                     highest), from, to (standard units), rows, difference
+                     (loss of first minus loss of second), se
+   winner            the theory that beats every rival, or null
+   segments          with `segment`: this whole object again for each, with
+                     segment, its name
+   reversals         with `segment`: for every pair of theories a, b and of
+                     segments first, second: difference_first,
+                     difference_second (L(a) - L(b) within each), difference of
+                     the two, se, t, df, p, p_holm, low, high
    verdict           the headline of the whole contest, one sentence
    advice            list of sentences, as printed on standard error
    caution           what the contest cannot show
