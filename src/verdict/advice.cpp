@@ -34,8 +34,9 @@ void advise_products(const Study& study, Advice& advice) {
                 if (absent.empty()) continue;
                 advice.push_back(fmt::format(
                     "Theory \"{}\": {} stands without {} as {} of its own, so the result depends on where the scales have their zero "
-                    "(Schmidt 1973; Evans 1991). Add {}, or use {{crossed: [...]}}, unless the scales have a true zero.",
-                    study.theories[t].name.text, describe(term), quoted_list(absent), absent.size() > 1 ? "terms" : "a term", quoted_list(absent)));
+                    "(Schmidt 1973; Evans 1991). Add {}{}, unless the scales have a true zero.",
+                    study.theories[t].name.text, describe(term), quoted_list(absent), absent.size() > 1 ? "terms" : "a term", quoted_list(absent),
+                    term.kind == TermKind::product ? ", or use {crossed: [...]}" : ""));
             }
 }
 
