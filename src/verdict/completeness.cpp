@@ -97,7 +97,10 @@ std::size_t smallest_training(const FlexibleTask& task) {
 void take_errors(const FlexibleErrors& errors, const Eigen::VectorXd& unit, Loss loss, CompletenessReport& report) {
     const Eigen::MatrixXd scaled = errors.errors * unit.cwiseInverse().asDiagonal();
     const Eigen::MatrixXd mean_scaled = errors.mean_errors * unit.cwiseInverse().asDiagonal();
-    report.flexible_row_loss = loss == Loss::absolute ? scaled.cwiseAbs().rowwise().mean() : scaled.rowwise().squaredNorm() / static_cast<double>(unit.size());
+    if (loss == Loss::absolute)
+        report.flexible_row_loss = scaled.cwiseAbs().rowwise().mean();
+    else
+        report.flexible_row_loss = scaled.cwiseAbs2().rowwise().mean();
     report.loss_flexible = report.flexible_row_loss.mean();
     report.q2_flexible = 1 - scaled.squaredNorm() / mean_scaled.squaredNorm();
 }
