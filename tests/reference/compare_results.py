@@ -1,10 +1,13 @@
 #!/usr/bin/env python3
 """Compares two files of the shape of results.json, number by number.
 
-    compare_results.py EXPECTED.json OTHER.json [--tolerance 1e-9] [--brief] [--losses EXPECTED.csv OTHER.csv]
+    compare_results.py EXPECTED.json OTHER.json [--tolerance 1e-9] [--brief] [--segment NAME]
+                       [--losses EXPECTED.csv OTHER.csv] [--parted EXPECTED.csv OTHER.csv]
 
 Every number of EXPECTED must be in OTHER: theories are matched by name, equations by outcome, terms by label,
-constructs and indicators by name, pairs by their two names in either order. A null in EXPECTED is not compared.
+constructs and indicators by name, pairs by their two names in either order, segments by name. A null in EXPECTED is not
+compared. Verdicts of pairs and the winner must be the same words. --segment NAME takes that segment of OTHER as the whole.
+Reversals of OTHER are recomputed from the pairs of its own segments.
 Prints, per quantity, how many numbers were compared, the largest disagreement and where it is.
 Exit status 1 above the tolerance or where a number is absent.
 
@@ -15,17 +18,27 @@ Disagreement is |x - y| / max(|x|, |y|, floor). The floors keep a number that is
   t, f, q2, R2, f2, weights, loadings      0.001
   AIC, AICc, BIC, HQ, GM                   1
   p-values and BIC weights                 1e-12
-Everything else is relative. The tests of a pair whose standard error is below 1e-10 of the losses (the same predictions
+  ends of the thirds                       0.001
+  differences of reversals and thirds      a thousandth of a loss
+  losses and differences of the stack      its loss
+Everything else is relative. The weights of a stack, which theories that resemble each other leave free, need agree to 1e-6
+only, absolutely, and its t and p to loss / se times the tolerance. The p-values of the model confidence set come from two
+bootstraps: within .02 and two Monte Carlo standard errors. Where EXPECTED finds the predictions of a pair equal, so that
+there is no test, the other file must have none. The tests of a pair whose standard error is below 1e-10 of the losses (the same predictions
 up to rounding) are not compared. Ranks must be equal unless the losses agree to 1e-9. With --losses the losses of every
-row are compared too (columns by name), with a floor of a thousandth of the contestant's mean loss.
+row are compared too (columns by name), with a floor of a thousandth of the contestant's mean loss; --parted does the same
+for disagreements.csv, whose rows must stand with the largest difference first.
 """
 import argparse
 import csv
 import json
 import sys
 
+from model_confidence_set import RESAMPLES, allowed
+from plain_verdict import reversals
+
 ABSENT = object()
-RATIOS = {"t", "f", "q2", "r2", "adjusted_r2", "f2", "weight", "loading", "relative"}
+RATIOS = {"t", "f", "q2", "r2", "adjusted_r2", "f2", "weight", "loading", "relative", "relative_low", "relative_high", "explained", "from", "to"}
 CRITERIA = {"aic", "aicc", "bic", "hq", "gm"}
 PROBABILITIES = {"p", "p_holm", "f_p", "bic_weight"}
 
@@ -36,8 +49,13 @@ class Comparison:
         self.worst = {}  # quantity -> [count, disagreement, where, x, y]
         self.absent = []
 
-    def number(self, quantity, where, x, y, floor=None):
-        if x is None or x is ABSENT or isinstance(x, str):
+    def same(self, where, what, x, y):
+        """Words, names and truth values: equal or not."""
+        if x != y:
+            self.absent.append(f"{where}, {what}: expected {x!r}, the other file has {'nothing' if y is ABSENT else repr(y)}")
+
+    def number(self, quantity, where, x, y, floor=None, slack=1.0):
+        if x is None or x is ABSENT or isinstance(x, (str, dict, list)):
             return
         if not isinstance(y, (int, float)) or isinstance(y, bool):
             self.absent.append(f"{where} {quantity}: expected {x!r}, the other file has "
@@ -47,7 +65,7 @@ class Comparison:
             last = quantity.split(".")[-1]
             floor = 1e-3 if last in RATIOS else 1.0 if last in CRITERIA else 1e-12 if last in PROBABILITIES else 0.0
         size = max(abs(x), abs(y), floor)
-        disagreement = abs(x - y) / size if size > 0 else 0.0
+        disagreement = abs(x - y) / size / slack if size > 0 else 0.0
         if disagreement != disagreement:
             disagreement = float("inf")
         entry = self.worst.setdefault(quantity, [0, -1.0, where, x, y])
@@ -58,11 +76,11 @@ class Comparison:
     def mapping(self, prefix, where, x, y, floors=None):
         """All numbers of a flat object."""
         for key, value in x.items():
-            if isinstance(value, (dict, str)):
+            if isinstance(value, (dict, str, bool)):
                 continue
             other = y.get(key, ABSENT) if isinstance(y, dict) else ABSENT
             if isinstance(value, list):
-                if all(isinstance(v, (int, float)) for v in value):
+                if value and all(isinstance(v, (int, float)) for v in value):
                     for i, v in enumerate(value):
                         got = other[i] if isinstance(other, list) and i < len(other) else ABSENT
                         self.number(f"{prefix}.{key}", f"{where} [{i}]", v, got)
@@ -107,6 +125,9 @@ def compare_theories(c, xs, ys):
         tied = loss is not None and sum(abs(loss - v) <= 1e-9 * loss for v in losses if v is not None) > 1
         if not tied:
             c.number("rank", where, x.get("rank"), y.get("rank", ABSENT))
+        for key in ("explained", "first_share"):
+            c.number(key, where, x.get(key), y.get(key, ABSENT))
+        compare_set(c, where, x.get("confidence_set"), y.get("confidence_set", {}))
         for part in ("fitted", "criteria"):
             c.mapping(part, where, x.get(part, {}), y.get(part, {}))
         compare_equations(c, where, x.get("equations"), y.get("equations"))
@@ -115,12 +136,24 @@ def compare_theories(c, xs, ys):
                 c.mapping("weights", f"{where}, {a['construct']}, {i['name']}", i, j)
 
 
+def compare_set(c, where, x, y):
+    """p in the model confidence set, from two bootstraps; the program's has 2000 resamples."""
+    for key in ("p_range", "p_max") if x else ():
+        p, other = x[key], y.get(key, ABSENT)
+        # As a share of what is allowed, scaled so that the whole of it is at the tolerance.
+        c.number(f"confidence_set.{key}", where, p, other, floor=1.0, slack=allowed(p, 2000, RESAMPLES) / c.tolerance / max(p, 1.0))
+
+
+TURNED_WORDS = {"first predicts better": "second predicts better", "second predicts better": "first predicts better"}
+
+
 def turned(pair, losses):
     """The pair seen from its other side."""
-    out = {"a": pair["b"], "b": pair["a"], "difference": -pair["difference"]}
-    if losses.get(pair["a"]):
-        out["relative"] = -pair["difference"] / losses[pair["a"]]
-    for test in ("rows", "corrected"):
+    out = dict(pair, a=pair["b"], b=pair["a"], difference=-pair["difference"])
+    loss = losses.get(pair["a"])
+    if loss:
+        out["relative"] = -pair["difference"] / loss
+    for test in ("rows", "corrected", "both"):
         old = pair.get(test) or {}
         new = dict(old)
         if isinstance(old.get("t"), (int, float)):
@@ -128,8 +161,30 @@ def turned(pair, losses):
         for mine, theirs in (("low", "high"), ("high", "low")):
             if isinstance(old.get(theirs), (int, float)):
                 new[mine] = -old[theirs]
+                if loss and f"relative_{mine}" in old:
+                    new[f"relative_{mine}"] = new[mine] / loss
         out[test] = new
+    if "encompassing" in pair:
+        out["encompassing"] = {"a_knows_more": pair["encompassing"]["b_knows_more"],
+                               "b_knows_more": pair["encompassing"]["a_knows_more"]}
+    if "verdict" in pair:
+        out["verdict"] = TURNED_WORDS.get(pair["verdict"], pair["verdict"])
     return out
+
+
+def compare_tests(c, where, x, y, size):
+    """Difference and tests of a pair of contestants whose larger loss is `size`. Says whether there was anything to test."""
+    floor = 1e-3 * size
+    c.number("pairs.difference", where, x.get("difference"), y.get("difference", ABSENT), floor)
+    c.number("pairs.relative", where, x.get("relative"), y.get("relative", ABSENT))
+    for test in ("rows", "corrected", "both"):
+        mine = x.get(test) or {}
+        if mine.get("se") is not None and mine["se"] < 1e-10 * size:
+            return False
+        c.mapping(f"pairs.{test}", where, mine, y.get(test), {"low": floor, "high": floor})
+        if "both" in x and mine.get("p") is None:
+            c.same(where, f"{test}.p of equal predictions", None, (y.get(test) or {}).get("p"))
+    return x.get("rows", {}).get("p") is not None
 
 
 def compare_pairs(c, xs, ys, losses):
@@ -142,14 +197,52 @@ def compare_pairs(c, xs, ys, losses):
             c.absent.append(f"{where}: the other file has no such pair")
             continue
         size = max(losses.get(a) or 0.0, losses.get(b) or 0.0)
-        floor = 1e-3 * size
-        c.number("pairs.difference", where, x.get("difference"), y.get("difference", ABSENT), floor)
-        c.number("pairs.relative", where, x.get("relative"), y.get("relative", ABSENT))
-        for test in ("rows", "corrected"):
-            mine = x.get(test) or {}
-            if mine.get("se") is not None and mine["se"] < 1e-10 * size:
-                continue
-            c.mapping(f"pairs.{test}", where, mine, y.get(test), {"low": floor, "high": floor})
+        c.number("pairs.monte_carlo_se", where, x.get("monte_carlo_se"), y.get("monte_carlo_se", ABSENT), 1e-6 * size)
+        if "verdict" in x:
+            c.same(where, "verdict", x["verdict"], y.get("verdict", ABSENT))
+        if not compare_tests(c, where, x, y, size):
+            continue
+        for side, test in x.get("encompassing", {}).items():
+            c.mapping("pairs.encompassing", f"{where}, {side}", test, y.get("encompassing", {}).get(side))
+        if "both" in x:  # a file with verdicts says of every pair whether it is nested
+            c.same(where, "nested", x.get("nested", {}).get("inner"), y.get("nested", {}).get("inner"))
+            c.mapping("pairs.extra_terms", where, x.get("nested", {}).get("extra_terms", {}), y.get("nested", {}).get("extra_terms"))
+
+
+def compare_stack(c, x, y):
+    """Losses as shares of the loss: the weights move all of them a little. t = difference / se moves by loss / se as much."""
+    loss = x["loss"]
+    c.number("stack.loss", "stack", loss, y.get("loss", ABSENT))
+    c.number("stack.difference", "stack", x["difference"], y.get("difference", ABSENT), loss)
+    c.number("stack.relative", "stack", x["relative"], y.get("relative", ABSENT), 1.0)
+    for test in ("rows", "corrected"):
+        share = loss / x[test]["se"] if x[test]["se"] else None
+        floors = {"se": loss, "low": loss, "high": loss, "relative_low": 1.0, "relative_high": 1.0, "t": share, "p": share}
+        c.mapping(f"stack.{test}", "stack", x[test], y.get(test), floors)
+    for i, j in c.matched("weight of", "name", "stack", x["weights"], y.get("weights")):
+        c.number("stack.weights", i["name"], i["weight"], j["weight"], floor=1.0, slack=1000.0)
+    c.same("stack", "complementary", x["complementary"], y.get("complementary", ABSENT))
+
+
+def compare_thirds(c, x, y, size):
+    c.same("disagreement", "first", x["first"], y.get("first", ABSENT))
+    c.same("disagreement", "second", x["second"], y.get("second", ABSENT))
+    known = {(t["along"], t["third"]): t for t in y.get("thirds", [])}
+    c.same("disagreement", "thirds along", sorted({t["along"] for t in x["thirds"]}), sorted({t["along"] for t in y.get("thirds", [])}))
+    for third in x["thirds"]:
+        where = f"third {third['third']} of {third['along']}"
+        c.mapping("thirds", where, third, known.get((third["along"], third["third"])), {"difference": 1e-3 * size, "se": 1e-3 * size})
+
+
+def compare_reversals(c, y):
+    known = {(r["a"], r["b"], r["first"], r["second"]): r for r in y.get("reversals", [])}
+    size = min(t["heldout"]["loss"] for t in y["theories"])
+    expected = reversals(y, c.level)
+    c.same("reversals", "count", len(expected), sum(r.get("t") is not None for r in known.values()))
+    for x in expected:
+        where = f"{x['a']} against {x['b']}, {x['first']} against {x['second']}"
+        floors = dict.fromkeys(("difference", "difference_first", "difference_second", "low", "high"), 1e-3 * size)
+        c.mapping("reversals", where, x, known.get((x["a"], x["b"], x["first"], x["second"])), floors)
 
 
 def read_losses(path):
@@ -166,8 +259,26 @@ def compare_losses(c, path_x, path_y):
             c.number("losses.csv", f"row {row}, {name}", value, ys.get(row, {}).get(name, ABSENT), floor[name])
 
 
+def compare_parted(c, path_x, path_y):
+    """disagreements.csv: every row of the other file, which may show fewer; the largest difference first."""
+    with open(path_x, encoding="utf-8", newline="") as f, open(path_y, encoding="utf-8-sig", newline="") as g:
+        xs, ys = {line["row"]: line for line in csv.DictReader(f)}, list(csv.DictReader(g))
+    if not ys:
+        c.absent.append(f"{path_y}: no rows")
+    size = sum(abs(float(x["difference"])) for x in xs.values()) / len(xs)
+    last = float("inf")
+    for y in ys:
+        for name, value in xs.get(y["row"], {"row": -1}).items():
+            c.number("disagreements.csv", f"row {y['row']}, {name}", float(value), float(y[name]) if name in y else ABSENT, max(size, 1e-3))
+        now = abs(float(y["difference"]))
+        if now > last * (1 + 1e-9) + 1e-12:
+            c.absent.append(f"{path_y}: row {y['row']} stands below a row with a smaller difference")
+        last = now
+
+
 def compare(x, y, tolerance):
     c = Comparison(tolerance)
+    c.level = x.get("trial", {}).get("level", 0.05)
     c.mapping("data", "data", {k: v for k, v in x.get("data", {}).items() if k.startswith("rows_")}, y.get("data", {}))
     compare_theories(c, x.get("theories"), y.get("theories"))
     for a, b in c.matched("benchmark", "name", "benchmarks", x.get("benchmarks"), y.get("benchmarks")):
@@ -178,6 +289,19 @@ def compare(x, y, tolerance):
             if entry.get("heldout", {}).get("loss") is not None:
                 losses[entry["name"]] = entry["heldout"]["loss"]
     compare_pairs(c, x.get("pairs"), y.get("pairs"), losses)
+    c.number("trial.repeats", "trial", x.get("trial", {}).get("repeats"), y.get("trial", {}).get("repeats", ABSENT))
+    if "winner" in x:
+        c.same("the contest", "winner", x["winner"], y.get("winner", ABSENT))
+    if "stack" in x:
+        compare_stack(c, x["stack"], y.get("stack", {}))
+    if "disagreement" in x:
+        compare_thirds(c, x["disagreement"], y.get("disagreement", {}), max(losses.values()))
+    for a, b in c.matched("segment", "segment", "segments", x.get("segments"), y.get("segments")):
+        c.mapping("segments.data", a["segment"], a["data"], b.get("data", {}))
+        compare_theories(c, a["theories"], b.get("theories"))
+    if "segments" in x:
+        c.same("segments", "order", [s["segment"] for s in x["segments"]], [s["segment"] for s in y.get("segments", [])])
+        compare_reversals(c, y)
     return c
 
 
@@ -187,12 +311,19 @@ def main():
     parser.add_argument("other")
     parser.add_argument("--tolerance", type=float, default=1e-9)
     parser.add_argument("--brief", action="store_true", help="one line, and only what disagrees")
+    parser.add_argument("--segment")
     parser.add_argument("--losses", nargs=2, metavar=("EXPECTED.csv", "OTHER.csv"))
+    parser.add_argument("--parted", nargs=2, metavar=("EXPECTED.csv", "OTHER.csv"))
     args = parser.parse_args()
     with open(args.expected, encoding="utf-8") as f, open(args.other, encoding="utf-8") as g:
-        c = compare(json.load(f), json.load(g), args.tolerance)
+        expected, other = json.load(f), json.load(g)
+    if args.segment:
+        other = next(s for s in other["segments"] if s["segment"] == args.segment)
+    c = compare(expected, other, args.tolerance)
     if args.losses:
         compare_losses(c, *args.losses)
+    if args.parted:
+        compare_parted(c, *args.parted)
 
     if not c.worst:
         print("nothing to compare")

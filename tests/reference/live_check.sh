@@ -19,10 +19,11 @@ check() {  # STUDY.yaml, by its absolute path
   if ! "$program" run "$1" -o "$out" >"$out.log" 2>&1; then
     echo "WRONG   $name: the program failed: $(grep -m1 error "$out.log" || tail -n 1 "$out.log")"; status=1; return
   fi
-  if ! "$PYTHON" "$here/plain_contest.py" "$1" --folds "$out/folds.csv" -o "$out.json" --losses "$out.csv" 2>"$out.log"; then
+  if ! "$PYTHON" "$here/plain_contest.py" "$1" --folds "$out/folds.csv" -o "$out.json" --losses "$out.csv" --parted "$out.parted.csv" 2>"$out.log"; then
     echo "WRONG   $name: plain_contest.py failed: $(tail -n 1 "$out.log")"; status=1; return
   fi
-  if line=$("$PYTHON" "$here/compare_results.py" "$out.json" "$out/results.json" --brief --losses "$out.csv" "$out/losses.csv"); then
+  if line=$("$PYTHON" "$here/compare_results.py" "$out.json" "$out/results.json" --brief --losses "$out.csv" "$out/losses.csv" \
+       --parted "$out.parted.csv" "$out/disagreements.csv"); then
     echo "ok      $name: $line"
   else
     echo "WRONG   $name:"; echo "$line" | sed 's/^/        /'; status=1

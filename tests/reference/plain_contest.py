@@ -1,12 +1,13 @@
 #!/usr/bin/env python3
 """A whole contest of rival theories in plain numpy: the second, independent way to every number of results.json.
 
-    plain_contest.py STUDY.yaml --folds folds.csv -o numbers.json [--losses losses.csv]
+    plain_contest.py STUDY.yaml --folds folds.csv -o numbers.json [--losses losses.csv] [--parted disagreements.csv]
 
 Reads the study and its raw data, takes the splits as given, fits every training set from its raw rows with
 ordinary least squares on [1, X], and writes the numbers under the names of results.json. Shares no code with the
-program. Slow and plain on purpose of being readable; numpy where an analyst would use numpy.
-Needs Python 3.9 or newer with numpy, PyYAML and scipy (tails and quantiles of t and F only).
+program. Slow and plain on purpose of being readable; numpy where an analyst would use numpy. With `segment` the splits
+within the segments are not in folds.csv: "segments" then holds what does not depend on them.
+Needs Python 3.9 or newer with numpy, PyYAML and scipy (tails and quantiles, non-negative least squares).
 """
 import argparse
 import csv
@@ -16,11 +17,15 @@ import itertools
 import json
 import math
 import os
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 import numpy as np
 import yaml
 from scipy import stats
+
+import plain_verdict
+from model_confidence_set import confidence_set
+from plain_verdict import holm
 
 # ---------------------------------------------------------------------------------------------------- the study
 
@@ -153,6 +158,7 @@ class Survey:
     values: np.ndarray  # rows x variables, reversed where declared; NaN only under rows: mean
     categories: dict  # column -> array of texts
     clusters: np.ndarray  # None without clusters
+    segments: dict  # name -> True for its rows; None without segments
 
 
 def read_survey(study, base, theories, header, cells, delimiter):
@@ -173,14 +179,39 @@ def read_survey(study, base, theories, header, cells, delimiter):
     for column, values in raw.items():
         if not filled_in or column in target_columns:
             keep &= ~np.isnan(values)
-    texts = {c.category for c in used if c.category} | ({data["cluster"]} if "cluster" in data else set())
+    segment = data.get("segment")
+    by, cuts = (segment["column"], as_list(segment.get("cuts", []))) if isinstance(segment, dict) else (segment, [])
+    texts = {c.category for c in used if c.category} | {name for name in (data.get("cluster"), by) if name}
     for column in texts:
         keep &= np.array([c != "" and not is_code(c, codes, delimiter) for c in cells[column]])
 
     values = np.column_stack([raw[c] if reflect is None else reflect - raw[c] for c, reflect in keys])
     as_text = {c: np.array(cells[c], dtype=object)[keep] for c in texts}
     return Survey(n, np.flatnonzero(keep) + 1, keys, values[keep], as_text,
-                  as_text[data["cluster"]] if "cluster" in data else None)
+                  as_text[data["cluster"]] if "cluster" in data else None,
+                  segments_of(by, cuts, as_text[by], delimiter) if by else None)
+
+
+def sorted_levels(cells):
+    """The distinct cells, by value if all are numbers, else as text."""
+    levels = sorted(set(cells))
+    return sorted(levels, key=float) if all(number(x) is not None for x in levels) else levels
+
+
+def segments_of(column, cuts, cells, delimiter):
+    """The segments, name -> its rows: one per value of the column, or one per span between cuts, its upper end included."""
+    if not cuts:
+        return {f"{column}: {level}": cells == level for level in sorted_levels(cells)}
+    values, ends = np.array([number(cell, delimiter) for cell in cells]), [float(cut) for cut in cuts]
+    names = [f"{column} <= {cuts[0]}"] + [f"{a} < {column} <= {b}" for a, b in zip(cuts, cuts[1:])] + [f"{column} > {cuts[-1]}"]
+    return {name: (low < values) & (values <= high) for name, low, high in zip(names, [-math.inf] + ends, ends + [math.inf])}
+
+
+def within(survey, keep):
+    """The rows of one segment."""
+    return replace(survey, rows=survey.rows[keep], values=survey.values[keep],
+                   categories={c: cells[keep] for c, cells in survey.categories.items()},
+                   clusters=None if survey.clusters is None else survey.clusters[keep], segments=None)
 
 
 # ------------------------------------------------------------------------------------- one set of training rows
@@ -207,10 +238,7 @@ def see(survey, train):
         raise SystemExit(f"constant in a training fold: {survey.keys[int(np.argmin(sd))][0]}")
     dummies = {}
     for column, cells in survey.categories.items():
-        levels = sorted(set(cells[train]))
-        if all(number(x) is not None for x in levels):
-            levels.sort(key=float)
-        dummies[column] = [(level, (cells == level).astype(float)) for level in levels[1:]]
+        dummies[column] = [(level, (cells == level).astype(float)) for level in sorted_levels(cells[train])[1:]]
     position = {key: j for j, key in enumerate(survey.keys)}
     return Sample(train, mean, sd, raw, (raw - mean) / sd, dummies, position)
 
@@ -320,9 +348,9 @@ def least_squares(x, y):
 # ------------------------------------------------------------------------------------------ held-out prediction
 
 
-def predict_theory(theory, sample, rules):
-    """Predicted target indicators of the held-out rows."""
-    train, test = sample.train, ~sample.train
+def predict_theory(theory, sample, rules, test=None):
+    """Predicted target indicators of the held-out rows, or of the rows `test`."""
+    train, test = sample.train, ~sample.train if test is None else test
     weights = composite_weights(theory, sample)
     parts = parts_of(theory, sample, weights, rules.metric)
     trained = {name: [(label, column[train]) for label, column in p] for name, p in parts.items()}
@@ -363,6 +391,8 @@ class Rules:
     mediators: str
     loss: str
     level: float
+    margin: float
+    controls: list
 
 
 def linear_predictors(theories, survey, target):
@@ -448,7 +478,7 @@ def fitted_numbers(r2, sse, rank, p, n):
 
 
 def explain(theories, survey, rules):
-    """Fitted numbers, equations, weights and criteria of every theory, from all rows used."""
+    """Fitted numbers, equations, weights and criteria of every theory, from all rows used; and per theory its scores."""
     sample = see(survey, np.ones(len(survey.rows), dtype=bool))
     n = len(survey.rows)
     weights = [composite_weights(t, sample) for t in theories]
@@ -481,12 +511,23 @@ def explain(theories, survey, rules):
                 entry["weights"].append({"construct": c.name, "indicators": [
                     {"name": v[0], "weight": float(a), "loading": float(b)}
                     for v, a, b in zip(c.variables, w[c.name], loadings)]})
+        entry["explained"] = explained(theory, sample, survey, rules)
         out.append(entry)
     best = min(e["criteria"]["bic"] for e in out)
     share = [math.exp(-(e["criteria"]["bic"] - best) / 2) for e in out]
     for entry, s in zip(out, share):
         entry["criteria"]["bic_weight"] = s / sum(share)
-    return out
+    scores = [{c.name: sample.z[:, block(sample, c)] @ w[c.name] for c in theory.constructs.values() if c.variables}
+              for theory, w in zip(theories, weights)]
+    return out, scores
+
+
+def explained(theory, sample, survey, rules):
+    """In-sample counterpart of q2: the same predictions for the rows that were fitted, pooled in units u_j."""
+    actual = survey.values[:, block(sample, theory.constructs[rules.target])]
+    e = (actual - predict_theory(theory, sample, rules, sample.train)) / actual.std(axis=0, ddof=1)
+    around = (actual - actual.mean(axis=0)) / actual.std(axis=0, ddof=1)
+    return 1 - float((e ** 2).sum() / (around ** 2).sum())
 
 
 def criteria(sse, p, n, full, score):
@@ -503,8 +544,7 @@ def criteria(sse, p, n, full, score):
 
 
 def one_test(mean, se, df, d, level):
-    quantile = stats.t.ppf(1 - level / 2, df)
-    quantile += (stats.t.sf(quantile, df) - level / 2) / stats.t.pdf(quantile, df)  # scipy 1.10 is good to 1e-11 only
+    quantile = plain_verdict.t_quantile(level, df)
     t = mean / se
     return {"se": float(se), "t": float(t), "df": int(df), "p": float(2 * stats.t.sf(abs(t), df)), "p_holm": None,
             "low": float(d - quantile * se), "high": float(d + quantile * se)}
@@ -514,13 +554,8 @@ UNDECIDED = {"se": None, "t": None, "df": None, "p": None, "p_holm": None, "low"
 
 
 def row_test(d, clusters, level):
-    n, mean = len(d), d.mean()
-    if clusters is None:
-        return one_test(mean, d.std(ddof=1) / math.sqrt(n), n - 1, mean, level)
-    names, member = np.unique(clusters.astype(str), return_inverse=True)
-    sums = np.bincount(member, weights=d - mean)
-    g = len(names)
-    return one_test(mean, math.sqrt(g / (g - 1) * (sums ** 2).sum()) / n, g - 1, mean, level)
+    se, df = plain_verdict.standard_error(d, clusters)
+    return one_test(d.mean(), se, df, d.mean(), level)
 
 
 def corrected_test(s, folds, d, level):
@@ -530,35 +565,49 @@ def corrected_test(s, folds, d, level):
     return one_test(s.mean(), se, len(s) - 1, d, level)
 
 
-def holm(p):
-    """Holm (1979) step-down adjusted p-values."""
-    adjusted, running = [0.0] * len(p), 0.0
-    for rank, j in enumerate(sorted(range(len(p)), key=lambda i: p[i])):
-        running = max(running, min(1.0, (len(p) - rank) * p[j]))
-        adjusted[j] = running
-    return adjusted
+def split_means(loss, splits):
+    """Mean loss of the held-out rows of each split, repeat by repeat. loss: repeats x rows."""
+    return np.array([row[fold == k].mean() for row, fold in zip(loss, splits) for k in np.unique(fold)])
 
 
-def compare_pairs(order, theories, losses, splits, clusters, level):
-    """losses[name]: repeats x rows."""
+def two_tests(a, b, splits, clusters, level):
+    """Loss a minus loss b, each repeats x rows, by the row test and the corrected test."""
+    d = a.mean(axis=0) - b.mean(axis=0)
+    loss = b.mean()
+    pair = {"difference": float(d.mean()), "relative": float(d.mean() / loss) if loss > 0 else None}
+    if np.ptp(d) <= plain_verdict.SAME * max(np.abs(a).max(), np.abs(b).max()):
+        pair |= {"rows": dict(UNDECIDED), "corrected": dict(UNDECIDED)}
+    else:
+        pair["rows"] = row_test(d, clusters, level)
+        pair["corrected"] = corrected_test(split_means(a, splits) - split_means(b, splits), len(np.unique(splits[0])), d.mean(), level)
+    for test in (pair["rows"], pair["corrected"]):
+        for end in ("low", "high"):
+            test[f"relative_{end}"] = test[end] / loss if test[end] is not None and loss > 0 else None
+    pair["both"] = plain_verdict.both_tests(pair["rows"], pair["corrected"])
+    return pair
+
+
+def compare_pairs(order, theories, losses, scaled, survey, splits, rules):
+    """theories: name -> Theory; losses[name]: repeats x rows; scaled[name]: errors in units u_j."""
     out = []
-    ids = [np.unique(fold, return_inverse=True) for fold in splits]
-    folds = len(ids[0][0])
-    split_means = {name: np.concatenate([np.bincount(k, weights=row) / np.bincount(k)
-                                         for row, (_, k) in zip(loss, ids)]) for name, loss in losses.items()}
     for a, b in itertools.combinations(order, 2):
-        d = losses[a].mean(axis=0) - losses[b].mean(axis=0)
-        pair = {"a": a, "b": b, "difference": float(d.mean()),
-                "relative": float(d.mean() / losses[b].mean()) if losses[b].mean() > 0 else None}
-        same = np.ptp(d) <= 1e-13 * max(np.abs(losses[a]).max(), np.abs(losses[b]).max())
-        pair["rows"] = dict(UNDECIDED) if same else row_test(d, clusters, level)
-        s = split_means[a] - split_means[b]
-        pair["corrected"] = dict(UNDECIDED) if same else corrected_test(s, folds, d.mean(), level)
+        pair = {"a": a, "b": b, **two_tests(losses[a], losses[b], splits, survey.clusters, rules.level)}
+        pair["monte_carlo_se"] = plain_verdict.monte_carlo_se(losses[a], losses[b])
+        if a in theories and b in theories:
+            pair["encompassing"] = {"a_knows_more": plain_verdict.knows_more(scaled[b], scaled[a], survey.clusters),
+                                    "b_knows_more": plain_verdict.knows_more(scaled[a], scaled[b], survey.clusters)}
+            for inner, outer in ((a, b), (b, a)):
+                if plain_verdict.is_nested(theories[inner], theories[outer], rules.target, rules.mediators):
+                    pair["nested"] = {"inner": inner, "extra_terms": plain_verdict.clark_west(scaled[inner], scaled[outer], survey.clusters)}
         out.append(pair)
-    for test in ("rows", "corrected"):
+    for test in ("rows", "corrected", "both"):
         own = [p[test] for p in out if p["a"] in theories and p["b"] in theories and p[test]["p"] is not None]
         for entry, adjusted in zip(own, holm([e["p"] for e in own])):
             entry["p_holm"] = adjusted
+    for pair in out:
+        both = pair["both"]
+        p = both["p"] if both["p_holm"] is None else both["p_holm"]
+        pair["verdict"] = plain_verdict.outcome(pair, p, losses[pair["a"]].mean(), losses[pair["b"]].mean(), rules.level, rules.margin)
     return out
 
 
@@ -581,7 +630,7 @@ def read_splits(path, rows):
     return [splits[r] for r in repeats]
 
 
-def contest(study_path, folds_path):
+def read_study(study_path):
     with open(study_path, encoding="utf-8") as f:
         study = yaml.load(f, Loader=yaml.BaseLoader)  # every scalar as text: no guessing of types
     base = os.path.dirname(os.path.abspath(study_path))
@@ -589,31 +638,102 @@ def contest(study_path, folds_path):
     header, cells, delimiter = read_cells(os.path.join(base, study["data"]["file"]), delimiter)
     theories = [read_theory(entry, study, header) for entry in study["theories"]]
     survey = read_survey(study, base, theories, header, cells, delimiter)
-    trial = study.get("trial", {})
+    trial, verdict = study.get("trial", {}), study.get("verdict", {})
     rules = Rules(study["target"], study.get("metric", "standard"), trial.get("mediators", "measured"),
-                  trial.get("loss", "squared"), float(study.get("verdict", {}).get("level", 0.05)))
-    splits = read_splits(folds_path, survey.rows)
+                  trial.get("loss", "squared"), float(verdict.get("level", 0.05)), float(verdict.get("margin", 0.02)),
+                  as_list(study.get("controls", [])))
+    return study, theories, survey, rules
 
+
+def row_losses(scaled, loss):
+    """Repeats x rows, from errors in units u_j."""
+    return (scaled ** 2 if loss == "squared" else abs(scaled)).mean(axis=2)
+
+
+def stack_numbers(theories, scaled, losses, best, survey, splits, rules):
+    combined, weights, determined = plain_verdict.stack(np.array([scaled[t.name] for t in theories]), splits)
+    loss = row_losses(combined, rules.loss)
+    tests = two_tests(loss, losses[best], splits, survey.clusters, rules.level)
+    both, relative = tests.pop("both"), tests["relative"]
+    return {"loss": float(loss.mean()), **tests,
+            "weights": [{"name": t.name, "weight": float(w) if determined else None} for t, w in zip(theories, weights)],
+            "complementary": both["p"] is not None and both["p"] < rules.level and relative < -rules.margin}
+
+
+def parting(theories, order, scores, losses, predicted, survey, rules):
+    """Where the two best-ranked theories part: the thirds, and a line per row."""
+    first, second = (next(i for i, t in enumerate(theories) if t.name == name) for name in order[:2])
+    along = plain_verdict.antecedents(theories[first], scores[first], rules.target, rules.controls)
+    for name, score in plain_verdict.antecedents(theories[second], scores[second], rules.target, rules.controls).items():
+        along.setdefault(name, score)
+    a, b = (losses[name].mean(axis=0) for name in order[:2])
+    numbers = {"first": order[0], "second": order[1], "thirds": plain_verdict.thirds(a - b, along, survey.clusters)}
+    lines = {"row": survey.rows, "actual": predicted["actual"], f"predicted: {order[0]}": predicted[order[0]],
+             f"predicted: {order[1]}": predicted[order[1]], f"loss: {order[0]}": a, f"loss: {order[1]}": b,
+             "difference": a - b, **{f"score: {name}": score for name, score in along.items()}}
+    return numbers, lines
+
+
+def segment_numbers(theories, survey, rules):
+    """Per segment what does not depend on its splits."""
+    out = []
+    for name, keep in survey.segments.items():
+        rows = within(survey, keep)
+        out.append({"segment": name, "data": {"rows_read": rows.rows_read, "rows_used": len(rows.rows)},
+                    "theories": [{"name": t.name, **numbers} for t, numbers in zip(theories, explain(theories, rows, rules)[0])]})
+    return out
+
+
+def contest(study_path, folds_path):
+    study, theories, survey, rules = read_study(study_path)
+    splits = read_splits(folds_path, survey.rows)
     errors, actual = hold_out(theories, survey, splits, rules)
     unit = actual.std(axis=0, ddof=1)
-    power = 2 if rules.loss == "squared" else 1
-    losses = {name: (abs(e / unit) ** power).mean(axis=2) for name, e in errors.items()}
+    scaled = {name: e / unit for name, e in errors.items()}
+    losses = {name: row_losses(e, rules.loss) for name, e in scaled.items()}
     indicators = [column for column, _ in theories[0].constructs[rules.target].variables]
     held_out = {name: held_out_numbers(e, errors["training mean"], actual, unit, indicators, losses[name])
                 for name, e in errors.items()}
 
-    explained = explain(theories, survey, rules)
+    in_sample, scores = explain(theories, survey, rules)
+    own = np.array([losses[t.name] for t in theories])  # theories x repeats x rows
     ranked = sorted(range(len(theories)), key=lambda i: held_out[theories[i].name]["loss"])
     order = [theories[i].name for i in ranked] + ["training mean", "linear benchmark"]
+    by_name = {t.name: t for t in theories}
+    pairs = compare_pairs(order, by_name, losses, scaled, survey, splits, rules)
+    shares = plain_verdict.first_shares(own.mean(axis=2))
+    chosen = confidence_set(own.mean(axis=1).T, survey.clusters)
+    for i, entry in enumerate(in_sample):
+        entry["first_share"] = float(shares[i])
+        entry["confidence_set"] = {"p_range": chosen["p_range"][i], "p_max": chosen["p_max"][i], "shortlisted": chosen["p_max"][i] > rules.level}
+    predicted = {name: (actual - errors[name].mean(axis=0)).mean(axis=1) for name in order[:2]}
+    parts, lines = parting(theories, order, scores, losses, predicted | {"actual": actual.mean(axis=1)}, survey, rules)
+
     results = {
         "schema": 1, "study": study["study"],
         "data": {"file": study["data"]["file"], "rows_read": survey.rows_read, "rows_used": len(survey.rows)},
+        "trial": {"repeats": len(splits), "level": rules.level},
         "theories": [{"name": theories[i].name, "claim": theories[i].claim, "rank": rank + 1,
-                      "heldout": held_out[theories[i].name], **explained[i]} for rank, i in enumerate(ranked)],
+                      "heldout": held_out[theories[i].name], **in_sample[i]} for rank, i in enumerate(ranked)],
         "benchmarks": [{"name": name, "heldout": held_out[name]} for name in order[len(theories):]],
-        "pairs": compare_pairs(order, set(order[:len(theories)]), losses, splits, survey.clusters, rules.level),
+        "pairs": pairs,
+        "winner": plain_verdict.winner(order[:len(theories)], pairs, rules.level),
+        "stack": stack_numbers(theories, scaled, losses, order[0], survey, splits, rules),
+        "disagreement": parts,
     }
-    return results, survey.rows, {name: losses[name].mean(axis=0) for name in order}
+    if study.get("trial", {}).get("repeats") == "auto":
+        results["trial"]["repeats"] = plain_verdict.repeats_needed(own, survey.clusters) or -1
+    if survey.segments is not None:
+        results["segments"] = segment_numbers(theories, survey, rules)
+    return results, survey.rows, {name: losses[name].mean(axis=0) for name in order}, lines
+
+
+def write_columns(path, columns):
+    """A .csv file from column name -> values."""
+    with open(path, "w", encoding="utf-8", newline="") as f:
+        out = csv.writer(f, lineterminator="\n")
+        out.writerow(columns)
+        out.writerows([int(row), *map(repr, map(float, values))] for row, *values in zip(*columns.values()))
 
 
 def main():
@@ -622,16 +742,16 @@ def main():
     parser.add_argument("--folds", required=True)
     parser.add_argument("-o", "--output", required=True)
     parser.add_argument("--losses")
+    parser.add_argument("--parted")
     args = parser.parse_args()
-    results, rows, losses = contest(args.study, args.folds)
+    results, rows, losses, parted = contest(args.study, args.folds)
     with open(args.output, "w", encoding="utf-8") as f:
         json.dump(results, f, indent=1, ensure_ascii=False)
         f.write("\n")
     if args.losses:
-        with open(args.losses, "w", encoding="utf-8", newline="") as f:
-            out = csv.writer(f, lineterminator="\n")
-            out.writerow(["row", *losses])
-            out.writerows([int(r), *map(repr, map(float, values))] for r, values in zip(rows, zip(*losses.values())))
+        write_columns(args.losses, {"row": rows, **losses})
+    if args.parted:
+        write_columns(args.parted, parted)
 
 
 if __name__ == "__main__":
