@@ -2,6 +2,7 @@
 #include "rivalfold/data/sha256.hpp"
 #include "rivalfold/report/results_folder.hpp"
 #include "rivalfold/verdict/advice.hpp"
+#include "rivalfold/verdict/completeness.hpp"
 #include "rivalfold/verdict/reversals.hpp"
 
 #include <fmt/chrono.h>
@@ -55,6 +56,8 @@ void run_stages(Outcome& outcome, const RunSettings& settings, bool with_contest
     outcome.advice = advise_on_study(study, outcome.survey, *outcome.sample, outcome.plan, outcome.trial);
     if (!with_contest) return;
     outcome.verdict = reach_verdict(study, outcome.survey, *outcome.sample, outcome.trial);
+    if (study.verdict.completeness)
+        outcome.completeness = measure_completeness(study, outcome.survey, *outcome.sample, outcome.plan, outcome.trial, outcome.run.threads);
     const std::vector<std::string> more = advise_on_outcome(study, outcome.survey, outcome.trial, outcome.verdict);
     outcome.advice.insert(outcome.advice.end(), more.begin(), more.end());
 }

@@ -134,10 +134,10 @@ void write_disagreements_csv(const Outcome& outcome, const Sink& sink) {
     text += ",difference";
     for (const std::string& antecedent : d.antecedents) text += "," + csv_field("score: " + antecedent);
     text += "\n";
-    for (const std::size_t row : d.order) {
-        const auto i = static_cast<Eigen::Index>(row);
-        const double loss_first = outcome.trial.contestants[d.first].row_loss(i), loss_second = outcome.trial.contestants[d.second].row_loss(i);
-        append(text, outcome.survey.rows[row]);
+    for (std::size_t k = 0; k < d.rows.size(); ++k) {
+        const auto i = static_cast<Eigen::Index>(k), row = static_cast<Eigen::Index>(d.rows[k]);
+        const double loss_first = outcome.trial.contestants[d.first].row_loss(row), loss_second = outcome.trial.contestants[d.second].row_loss(row);
+        append(text, outcome.survey.rows[d.rows[k]]);
         for (const double value : {d.actual(i), d.predicted_first(i), d.predicted_second(i), loss_first, loss_second, loss_first - loss_second}) {
             text += ',';
             append(text, value);

@@ -147,6 +147,21 @@ Json disagreement(const Outcome& outcome) {
     return {{"first", outcome.trial.contestants[d.first].name}, {"second", outcome.trial.contestants[d.second].name}, {"thirds", std::move(thirds)}};
 }
 
+Json completeness(const Outcome& outcome) {
+    const CompletenessReport& report = outcome.completeness;
+    Json theories = Json::array();
+    for (const TheoryCompleteness& theory : report.theories) {
+        Json one = {{"name", outcome.trial.contestants[theory.contestant].name}, {"completeness", number(theory.completeness)}, {"low", number(theory.low)}, {"high", number(theory.high)},
+                    {"restrictiveness", number(theory.restrictiveness)}, {"restrictiveness_se", number(theory.restrictiveness_se)}};
+        if (!theory.reason.empty()) one["reason"] = theory.reason;
+        theories.push_back(std::move(one));
+    }
+    Json out = {{"rows", report.rows}, {"subsample", report.subsample}, {"loss_mean", number(report.loss_mean)}, {"loss_flexible", number(report.loss_flexible)},
+                {"q2_flexible", number(report.q2_flexible)}, {"antecedents", report.antecedents}, {"theories", std::move(theories)}, {"seconds", report.seconds}};
+    if (!report.note.empty()) out["reason"] = report.note;
+    return out;
+}
+
 Json reversals(const Outcome& outcome) {
     Json list = Json::array();
     for (const Reversal& r : outcome.reversals) {
@@ -178,6 +193,7 @@ Json whole_object(const Outcome& outcome) {
     for (const PairReport& pair : outcome.verdict.pairs) json["pairs"].push_back(pair_of(outcome, pair));
     json["stack"] = stack(outcome);
     json["disagreement"] = disagreement(outcome);
+    if (study.verdict.completeness) json["completeness"] = completeness(outcome);
     json["winner"] = outcome.verdict.winner ? Json(trial.contestants[*outcome.verdict.winner].name) : Json(nullptr);
     json["verdict"] = outcome.verdict.headline;
     if (!outcome.segments.empty()) {

@@ -114,10 +114,10 @@ std::string parting(const Outcome& outcome, const TerminalStyle& style) {
     const Disagreement& d = outcome.verdict.disagreement;
     const std::string first = plain(outcome.trial.contestants[d.first].name), second = plain(outcome.trial.contestants[d.second].name);
     TextTable rows({{"row", false}, {"actual", false}, {"first says", false}, {"second says", false}, {"first's loss", false}, {"second's loss", false}});
-    for (std::size_t k = 0; k < std::min<std::size_t>(5, d.order.size()); ++k) {
-        const auto i = static_cast<Eigen::Index>(d.order[k]);
-        rows.add({std::to_string(outcome.survey.rows[d.order[k]]), fixed(d.actual(i), 2), fixed(d.predicted_first(i), 2), fixed(d.predicted_second(i), 2),
-                  fixed(outcome.trial.contestants[d.first].row_loss(i), 3), fixed(outcome.trial.contestants[d.second].row_loss(i), 3)});
+    for (std::size_t k = 0; k < std::min<std::size_t>(5, d.rows.size()); ++k) {
+        const auto i = static_cast<Eigen::Index>(k), row = static_cast<Eigen::Index>(d.rows[k]);
+        rows.add({std::to_string(outcome.survey.rows[d.rows[k]]), fixed(d.actual(i), 2), fixed(d.predicted_first(i), 2), fixed(d.predicted_second(i), 2),
+                  fixed(outcome.trial.contestants[d.first].row_loss(row), 3), fixed(outcome.trial.contestants[d.second].row_loss(row), 3)});
     }
     std::string out = rows.render(static_cast<std::size_t>(style.width)) + "\n";
     TextTable thirds({{"mean loss difference", true}, {"lowest third", false}, {"middle third", false}, {"highest third", false}});
@@ -126,9 +126,25 @@ std::string parting(const Outcome& outcome, const TerminalStyle& style) {
         for (std::size_t third = 0; third < 3; ++third) cells.push_back(fmt::format("{} ({})", fixed(d.thirds[k + third].difference, 3), fixed(d.thirds[k + third].se, 3)));
         thirds.add(std::move(cells));
     }
-    out += thirds.render(static_cast<std::size_t>(style.width)) + "\n";
+    if (!d.thirds.empty()) out += thirds.render(static_cast<std::size_t>(style.width)) + "\n";
     return out + paragraph(fmt::format("First: \"{}\"; second: \"{}\". Above: the rows whose losses differ most, means of the target's indicators in their own units. Below: loss of the first minus "
                                        "loss of the second (standard error) by thirds of each antecedent; negative: the first predicts those rows better. A description, not a test.", first, second), style);
+}
+
+std::string completeness_table(const Outcome& outcome, const TerminalStyle& style) {
+    const CompletenessReport& report = outcome.completeness;
+    if (!report.computed) return paragraph(plain(report.note), style);
+    TextTable table({{"theory", true}, {"completeness", false}, {"interval", false}, {"restrictiveness", false}});
+    std::string reasons;
+    for (const TheoryCompleteness& theory : report.theories) {
+        const std::string name = plain(outcome.trial.contestants[theory.contestant].name);
+        table.add({name, fixed(theory.completeness, 3), fmt::format("{} .. {}", fixed(theory.low, 3), fixed(theory.high, 3)), fixed(theory.restrictiveness, 3)});
+        if (!theory.reason.empty()) reasons += wrap(fmt::format("{}: {}", name, plain(theory.reason)), static_cast<std::size_t>(style.width), 2) + "\n";
+    }
+    return table.render(static_cast<std::size_t>(style.width)) + reasons + "\n" +
+           paragraph(fmt::format("The flexible benchmark (kernel ridge regression, no form assumed) has loss {} and q2 {} on {} rows. completeness: the share of what it gains over the training mean "
+                                 "that a theory gains too. restrictiveness: mean squared error of the theory's equation on random smooth outcomes, 1 for a theory that could fit none of them, near 0 for "
+                                 "one that could fit anything and so earns little by fitting this. It took {:.1f} s. {}", fixed(report.loss_flexible, 4), fixed(report.q2_flexible, 3), report.rows, report.seconds, plain(report.note)), style);
 }
 
 std::string segments_table(const Outcome& outcome, const TerminalStyle& style) {
@@ -154,6 +170,7 @@ std::string verdict_in_words(const Outcome& outcome, const TerminalStyle& style)
         if (!pair.nested_words.empty()) out += paragraph(plain(pair.nested_words), style);
     for (const std::string& words : outcome.verdict.encompassing_words) out += paragraph(plain(words), style);
     if (outcome.verdict.stack.present) out += paragraph(plain(outcome.verdict.stack.words), style);
+    if (!outcome.study.verdict.completeness) out += paragraph("How much there is to predict at all: verdict: {completeness: true} adds a flexible benchmark.", style);
     return out;
 }
 
@@ -177,6 +194,7 @@ std::string write_tables(const Outcome& outcome, const TerminalStyle& style) {
         out += "\n" + bold("Pairs of theories", style) + "\n" + pairs_table(outcome, style) + "\n" + paragraph(pairs_reading(outcome), style);
     out += "\n" + bold("Fit and prediction", style) + "\n" + fit_and_prediction(outcome, style);
     if (outcome.verdict.disagreement.present) out += "\n" + bold("Where the first two part", style) + "\n" + parting(outcome, style);
+    if (study.verdict.completeness) out += "\n" + bold("How much there is to predict", style) + "\n" + completeness_table(outcome, style);
     if (!outcome.segments.empty()) out += "\n" + bold("Segments", style) + "\n" + segments_table(outcome, style);
     out += "\n" + bold("Verdict", style) + "\n" + verdict_in_words(outcome, style);
     out += paragraph(caution(), style);

@@ -10,7 +10,8 @@ namespace rivalfold {
 ErrorBook::ErrorBook(std::vector<std::size_t> members, Eigen::Index n, Eigen::VectorXd unit, bool absolute, WorkerPool& pool)
     : members_(std::move(members)), n_(n), unit_(std::move(unit)), absolute_(absolute), pool_(pool), rows_per_task_(std::max<Eigen::Index>(8192, (n + 31) / 32)) {
     const auto m = static_cast<Eigen::Index>(members_.size());
-    products_ = Eigen::MatrixXd::Zero(n, m * (m + 1) / 2);
+    products_ = Eigen::MatrixXd::Zero(n, m * (m - 1) / 2);
+    if (absolute_) squares_ = Eigen::MatrixXd::Zero(n, m);
     mean_error_ = Eigen::MatrixXd::Zero(n, m);
     stack_loss_ = Eigen::VectorXd::Zero(n);
     stack_weights_ = Eigen::VectorXd::Zero(m);
@@ -20,7 +21,7 @@ std::vector<Eigen::MatrixXd> ErrorBook::fold_products(std::span<const std::uint3
     const auto m = static_cast<Eigen::Index>(members_.size());
     const Eigen::Index q = unit_.size();
     const auto tasks = static_cast<std::size_t>((n_ + rows_per_task_ - 1) / rows_per_task_);
-    const auto pairs = products_.cols();
+    const Eigen::Index pairs = m * (m + 1) / 2;
     std::vector<Eigen::MatrixXd> partial(tasks);  // folds x pairs
     pool_.run(tasks, [&](std::size_t task, unsigned) {
         const Eigen::Index first = static_cast<Eigen::Index>(task) * rows_per_task_, last = std::min(n_, first + rows_per_task_);
@@ -36,7 +37,10 @@ std::vector<Eigen::MatrixXd> ErrorBook::fold_products(std::span<const std::uint3
                     for (Eigen::Index i = 0; i < last - first; ++i) product(i) += x[i] * y[i];
                 }
                 product /= static_cast<double>(q);
-                products_.col(pair).segment(first, last - first) += product;
+                if (a != b)
+                    products_.col(a * (a - 1) / 2 + b).segment(first, last - first) += product;
+                else if (absolute_)
+                    squares_.col(a).segment(first, last - first) += product;
                 for (Eigen::Index i = 0; i < last - first; ++i) partial[task](pair, fold_of[static_cast<std::size_t>(first + i)]) += product(i);
             }
         for (Eigen::Index a = 0; a < m; ++a)
@@ -93,12 +97,16 @@ void ErrorBook::add_repeat(std::span<const std::uint32_t> fold_of, int folds, co
     ++repeats_;
 }
 
-ErrorProducts ErrorBook::finish() const {
+ErrorProducts ErrorBook::take() {
     ErrorProducts out;
     out.members = members_;
     const double repeats = repeats_;
-    out.products = products_ / repeats;
-    out.mean_error = mean_error_ / repeats;
+    products_ /= repeats;
+    squares_ /= repeats;
+    mean_error_ /= repeats;
+    out.products = std::move(products_);
+    out.squares = std::move(squares_);
+    out.mean_error = std::move(mean_error_);
     out.stack.row_loss = stack_loss_ / repeats;
     out.stack.split_loss = Eigen::Map<const Eigen::VectorXd>(stack_split_loss_.data(), static_cast<Eigen::Index>(stack_split_loss_.size()));
     out.stack.loss = out.stack.row_loss.mean();

@@ -22,8 +22,8 @@ public:
     const std::vector<std::size_t>& members() const { return members_; }
     /// One repeat's errors in units u_j: errors[((member * q) + j) * n + row], every row held out once; its folds 0 .. folds - 1.
     void add_repeat(std::span<const std::uint32_t> fold_of, int folds, const double* errors);
-    /// Means over the repeats added.
-    ErrorProducts finish() const;
+    /// Means over the repeats added; the book is empty after.
+    ErrorProducts take();
 
 private:
     std::vector<Eigen::MatrixXd> fold_products(std::span<const std::uint32_t> fold_of, int folds, const double* errors);
@@ -35,7 +35,8 @@ private:
     WorkerPool& pool_;
     Eigen::Index rows_per_task_;
     int repeats_ = 0;
-    Eigen::MatrixXd products_;     // n x m(m+1)/2, sums over repeats
+    Eigen::MatrixXd products_;     // n x m(m-1)/2, sums over repeats
+    Eigen::MatrixXd squares_;      // n x m, for absolute loss only
     Eigen::MatrixXd mean_error_;   // n x m
     Eigen::VectorXd stack_loss_;   // n
     std::vector<double> stack_split_loss_;

@@ -111,7 +111,10 @@ void Contest::run_splits(FoldPlan& plan, const std::function<void(double)>& prog
         if (!again) break;
     }
     trial_.repeats = plan.repeats;
+    slots_ = {};
+    error_slots_ = {};
     finish_results();
+    row_loss_.resize(0, 0);
 }
 
 void Contest::run_repeats(const FoldPlan& plan, int first, int last, const std::function<void(double)>& progress) {
@@ -194,9 +197,11 @@ bool Contest::needs_more_repeats(int repeats) const {
     for (std::size_t a = 0; a < trial_.theories.size(); ++a)
         for (std::size_t b = a + 1; b < trial_.theories.size(); ++b) {
             if (trial_.contestants[a].failed || trial_.contestants[b].failed) continue;
-            const Eigen::VectorXd d = (row_loss_.col(static_cast<Eigen::Index>(a)) - row_loss_.col(static_cast<Eigen::Index>(b))) / static_cast<double>(repeats);
+            const auto col_a = row_loss_.col(static_cast<Eigen::Index>(a)), col_b = row_loss_.col(static_cast<Eigen::Index>(b));
+            const Eigen::VectorXd d = without_rounding((col_a - col_b) / static_cast<double>(repeats), col_a.maxCoeff() / static_cast<double>(repeats));
             Eigen::VectorXd by_repeat(repeats);
             for (int r = 0; r < repeats; ++r) by_repeat(r) = repeat_loss_[a][static_cast<std::size_t>(r)] - repeat_loss_[b][static_cast<std::size_t>(r)];
+            by_repeat = without_rounding(std::move(by_repeat), repeat_loss_[a].front());
             if (standard_error(by_repeat, {}, 0) > 0.1 * standard_error(d, survey_.clusters, survey_.cluster_names.size())) return true;
         }
     return false;
@@ -227,7 +232,7 @@ void Contest::finish_results() {
         losses.rmse = std::sqrt(pooled / (cells * q));
         losses.q2 = 1 - pooled / pooled_mean;
     }
-    if (book_) trial_.errors = book_->finish();
+    if (book_) trial_.errors = book_->take();
 }
 
 }  // namespace

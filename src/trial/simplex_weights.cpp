@@ -25,7 +25,7 @@ Eigen::VectorXd nonnegative_least_squares(const Eigen::MatrixXd& g, const Eigen:
     const Eigen::Index m = b.size();
     Eigen::VectorXd x = Eigen::VectorXd::Zero(m);
     std::vector<Eigen::Index> free;
-    const double tolerance = 1e-12 * std::max(1e-300, b.cwiseAbs().maxCoeff());
+    const double tolerance = 1e-11 * std::max(1e-300, b.cwiseAbs().maxCoeff());
     for (Eigen::Index round = 0; round < 10 * m + 10; ++round) {
         const Eigen::VectorXd gradient = b - g * x;
         Eigen::Index enter = -1;
@@ -63,10 +63,8 @@ Eigen::VectorXd stacking_weights(const Eigen::MatrixXd& error_products) {
     const Eigen::Index m = error_products.rows();
     const double scale = error_products.trace() / static_cast<double>(m);
     if (!(scale > 0)) return Eigen::VectorXd::Constant(m, 1.0 / static_cast<double>(m));
-    // A trace of ridge makes the split between identical theories definite without moving it between different ones.
-    Eigen::MatrixXd g = error_products / scale;
-    g.diagonal().array() += 1e-10;
-    const Eigen::VectorXd x = nonnegative_least_squares(g, Eigen::VectorXd::Ones(m));
+    // Of identical theories the first takes the weight: the second's gradient is then zero and it never enters.
+    const Eigen::VectorXd x = nonnegative_least_squares(error_products / scale, Eigen::VectorXd::Ones(m));
     const double sum = x.sum();
     return sum > 0 ? Eigen::VectorXd(x / sum) : Eigen::VectorXd::Constant(m, 1.0 / static_cast<double>(m));
 }

@@ -15,4 +15,9 @@ double standard_error(const Eigen::VectorXd& d, const std::vector<int>& clusters
     return std::sqrt(g / (g - 1) * sums.squaredNorm()) / n;
 }
 
+Eigen::VectorXd without_rounding(Eigen::VectorXd d, double scale) {
+    if (d.cwiseAbs().maxCoeff() <= 1e-12 * scale) d.setZero();
+    return d;
+}
+
 }  // namespace rivalfold

@@ -63,7 +63,9 @@ void add_companions(const Study& study, const Survey& survey, const Trial& trial
     const std::size_t a = place(pair.a), b = place(pair.b);
     if (!pair.theories || a == members.size() || b == members.size()) return;
     const auto own_minus_shared = [&](std::size_t own) -> Eigen::VectorXd {
-        return trial.errors.products.col(ErrorProducts::column(own, own)) - trial.errors.products.col(ErrorProducts::column(a, b));
+        const auto shared = trial.errors.products.col(ErrorProducts::column(a, b));
+        const Eigen::VectorXd squares = trial.errors.squares.size() == 0 ? trial.contestants[members[own]].row_loss : Eigen::VectorXd(trial.errors.squares.col(static_cast<Eigen::Index>(own)));
+        return without_rounding(squares - shared, squares.maxCoeff());
     };
     pair.b_knows_more = mean_above_zero(own_minus_shared(a), survey, false);
     pair.a_knows_more = mean_above_zero(own_minus_shared(b), survey, false);
@@ -101,12 +103,12 @@ StackReport judge_stack(const Study& study, const Survey& survey, const Trial& t
     out.loss = stack.loss;
     out.weights.assign(trial.theories.size(), 0);
     for (std::size_t k = 0; k < trial.errors.members.size(); ++k) out.weights[trial.errors.members[k]] = stack.weights(static_cast<Eigen::Index>(k));
-    const Eigen::VectorXd d = stack.row_loss - leader.row_loss;
+    const Eigen::VectorXd d = without_rounding(stack.row_loss - leader.row_loss, leader.row_loss.maxCoeff());
     out.difference = d.mean();
     out.relative = out.difference / leader.loss;
     const double level = study.verdict.level;
     out.rows = survey.clusters.empty() ? row_test(d, level) : cluster_test(d, survey.clusters, survey.cluster_names.size(), level);
-    out.corrected = corrected_test(stack.split_loss - leader.split_loss, trial.folds, out.difference, level);
+    out.corrected = corrected_test(without_rounding(stack.split_loss - leader.split_loss, leader.split_loss.maxCoeff()), trial.folds, out.difference, level);
     out.p = std::isnan(out.rows.p) || std::isnan(out.corrected.p) ? kNaN : std::max(out.rows.p, out.corrected.p);
     out.low = std::min(out.rows.low, out.corrected.low);
     out.high = std::max(out.rows.high, out.corrected.high);

@@ -88,6 +88,7 @@ ConfidenceSet confidence_set(const Eigen::MatrixXd& losses, const std::vector<in
     const Eigen::MatrixXd moved = bootstrap_means(losses, clusters, n_clusters, seed, resamples, set.grouped).rowwise() - mean;
     const auto m = static_cast<std::size_t>(losses.cols());
     const auto b = static_cast<double>(resamples);
+    const double nothing = 1e-12 * mean.cwiseAbs().maxCoeff();  // deviations that are rounding alone
     set.range = walk(m, resamples, [&](const std::vector<Eigen::Index>& left, std::vector<double>& null, std::size_t& drop) {
         double statistic = 0, worst = -1;
         for (std::size_t i = 0; i < left.size(); ++i)
@@ -95,7 +96,7 @@ ConfidenceSet confidence_set(const Eigen::MatrixXd& losses, const std::vector<in
                 if (i == k) continue;
                 const Eigen::VectorXd d = moved.col(left[i]) - moved.col(left[k]);
                 const double deviation = std::sqrt(d.squaredNorm() / b);
-                if (!(deviation > 0)) continue;
+                if (!(deviation > nothing)) continue;
                 const double t = (mean(left[i]) - mean(left[k])) / deviation;
                 if (t > worst) {
                     worst = t;
@@ -119,7 +120,7 @@ ConfidenceSet confidence_set(const Eigen::MatrixXd& losses, const std::vector<in
         for (std::size_t i = 0; i < left.size(); ++i) {
             const Eigen::VectorXd d = moved.col(left[i]) - centre;
             const double deviation = std::sqrt(d.squaredNorm() / b);
-            if (!(deviation > 0)) continue;
+            if (!(deviation > nothing)) continue;
             const double t = (mean(left[i]) - mean_of_set) / deviation;
             for (std::size_t r = 0; r < resamples; ++r) {
                 const double value = d(static_cast<Eigen::Index>(r)) / deviation;

@@ -9,35 +9,42 @@
 namespace rivalfold {
 namespace {
 
-/// Scores of the antecedents in either target equation, controls and category levels left out, each construct once.
-void add_scores(const Study& study, const Sample& sample, const Trial& trial, Disagreement& out) {
+constexpr std::size_t kMostRows = 10000;
+
+/// Calls use(name, score of every row in standard units) for the antecedents in either target equation, controls and category levels left
+/// out, each construct once.
+template <class Use>
+void for_each_antecedent(const Study& study, const Sample& sample, const Trial& trial, const Disagreement& out, Use use) {
     const RowBlock rows{sample.values.data(), sample.gappy.empty() ? nullptr : sample.gaps.data(), sample.n, sample.n};
-    std::vector<Eigen::VectorXd> columns;
+    std::vector<std::string> seen;
+    Eigen::VectorXd score(sample.n);
     for (const std::size_t theory : {out.first, out.second}) {
         const Blueprint& plan = trial.theories[theory]->blueprint();
         for (const int b : plan.target_plan().predecessors) {
             const Block& block = plan.blocks[static_cast<std::size_t>(b)];
             const bool control = std::any_of(study.controls.begin(), study.controls.end(), [&](const Name& name) { return name.text == block.construct; });
-            if (block.is_level() || control || std::find(out.antecedents.begin(), out.antecedents.end(), block.construct) != out.antecedents.end()) continue;
-            out.antecedents.push_back(block.construct);
-            Eigen::VectorXd score(sample.n);
+            if (block.is_level() || control || std::find(seen.begin(), seen.end(), block.construct) != seen.end()) continue;
+            seen.push_back(block.construct);
             const Fit& fit = trial.whole[theory].fit;
             trial.theories[theory]->form_score(fit, b, rows, score.data());
             const ScoreMap& map = fit.scores[static_cast<std::size_t>(b)];
-            columns.emplace_back((score.array() - map.mean) / map.sd);
+            score = (score.array() - map.mean) / map.sd;
+            use(block.construct, score);
         }
     }
-    out.scores.resize(sample.n, static_cast<Eigen::Index>(columns.size()));
-    for (std::size_t c = 0; c < columns.size(); ++c) out.scores.col(static_cast<Eigen::Index>(c)) = columns[c];
 }
 
 void add_thirds(const std::string& along, const Eigen::VectorXd& values, const Eigen::VectorXd& d, const Survey& survey, Disagreement& out) {
     std::vector<Eigen::Index> order(static_cast<std::size_t>(values.size()));
     std::iota(order.begin(), order.end(), Eigen::Index{0});
-    std::stable_sort(order.begin(), order.end(), [&](Eigen::Index a, Eigen::Index b) { return values(a) < values(b); });
+    const auto less = [&](Eigen::Index a, Eigen::Index b) { return values(a) < values(b) || (values(a) == values(b) && a < b); };
+    const auto cut = [&](std::size_t third) { return order.begin() + static_cast<std::ptrdiff_t>(order.size() * third / 3); };
+    if (order.size() < 6) return;
+    std::nth_element(order.begin(), cut(1), order.end(), less);
+    std::nth_element(cut(1), cut(2), order.end(), less);
     for (std::size_t third = 0; third < 3; ++third) {
+        std::sort(cut(third), cut(third + 1));  // rows in their own order, so that sums do not depend on the partition
         const std::size_t from = order.size() * third / 3, to = order.size() * (third + 1) / 3;
-        if (to - from < 2) continue;
         const std::vector<Eigen::Index> rows(order.begin() + static_cast<std::ptrdiff_t>(from), order.begin() + static_cast<std::ptrdiff_t>(to));
         std::vector<int> clusters;
         std::vector<int> number(survey.cluster_names.size(), -1);
@@ -50,7 +57,8 @@ void add_thirds(const std::string& along, const Eigen::VectorXd& values, const E
         }
         const Eigen::VectorXd part = d(rows);
         const double se = n_clusters == 1 ? std::nan("") : standard_error(part, clusters, static_cast<std::size_t>(n_clusters));
-        out.thirds.push_back({along, static_cast<int>(third) + 1, values(rows.front()), values(rows.back()), rows.size(), part.mean(), se});
+        const Eigen::VectorXd along_values = values(rows);
+        out.thirds.push_back({along, static_cast<int>(third) + 1, along_values.minCoeff(), along_values.maxCoeff(), rows.size(), part.mean(), se});
     }
 }
 
@@ -65,19 +73,33 @@ Disagreement find_disagreement(const Study& study, const Survey& survey, const S
     out.first = first;
     out.second = second;
     const Eigen::VectorXd d = trial.contestants[first].row_loss - trial.contestants[second].row_loss;
-    out.order.resize(static_cast<std::size_t>(d.size()));
-    std::iota(out.order.begin(), out.order.end(), std::size_t{0});
-    std::stable_sort(out.order.begin(), out.order.end(),
-                     [&](std::size_t i, std::size_t k) { return std::fabs(d(static_cast<Eigen::Index>(i))) > std::fabs(d(static_cast<Eigen::Index>(k))); });
+    std::vector<std::size_t> order(static_cast<std::size_t>(d.size()));
+    std::iota(order.begin(), order.end(), std::size_t{0});
+    const auto larger = [&](std::size_t i, std::size_t k) {
+        const double x = std::fabs(d(static_cast<Eigen::Index>(i))), y = std::fabs(d(static_cast<Eigen::Index>(k)));
+        return x > y || (x == y && i < k);
+    };
+    const std::size_t listed = std::min(kMostRows, order.size());
+    std::partial_sort(order.begin(), order.begin() + static_cast<std::ptrdiff_t>(listed), order.end(), larger);
+    out.rows.assign(order.begin(), order.begin() + static_cast<std::ptrdiff_t>(listed));
     const std::vector<int>& target = trial.theories[first]->blueprint().target_columns();
-    out.actual = Eigen::VectorXd::Zero(sample.n);
-    for (const int column : target) out.actual += (sample.values.col(column).array() + sample.centre(column)).matrix() / static_cast<double>(target.size());
-    out.predicted_first = out.actual - trial.errors.mean_error.col(a - members.begin());
-    out.predicted_second = out.actual - trial.errors.mean_error.col(b - members.begin());
-    add_scores(study, sample, trial, out);
-    for (std::size_t c = 0; c < out.antecedents.size(); ++c) add_thirds(out.antecedents[c], out.scores.col(static_cast<Eigen::Index>(c)), d, survey, out);
-    if (out.antecedents.size() > 1)
-        add_thirds("spread of the antecedents", out.scores.rowwise().maxCoeff() - out.scores.rowwise().minCoeff(), d, survey, out);
+    out.actual = Eigen::VectorXd::Zero(static_cast<Eigen::Index>(listed));
+    for (const int column : target)
+        out.actual += (sample.values.col(column)(out.rows).array() + sample.centre(column)).matrix() / static_cast<double>(target.size());
+    out.predicted_first = out.actual - trial.errors.mean_error.col(a - members.begin())(out.rows);
+    out.predicted_second = out.actual - trial.errors.mean_error.col(b - members.begin())(out.rows);
+    std::vector<Eigen::VectorXd> listed_scores;
+    Eigen::VectorXd highest, lowest;
+    for_each_antecedent(study, sample, trial, out, [&](const std::string& name, const Eigen::VectorXd& score) {
+        out.antecedents.push_back(name);
+        listed_scores.emplace_back(score(out.rows));
+        add_thirds(name, score, d, survey, out);
+        highest = highest.size() == 0 ? score : Eigen::VectorXd(highest.cwiseMax(score));
+        lowest = lowest.size() == 0 ? score : Eigen::VectorXd(lowest.cwiseMin(score));
+    });
+    out.scores.resize(static_cast<Eigen::Index>(listed), static_cast<Eigen::Index>(listed_scores.size()));
+    for (std::size_t c = 0; c < listed_scores.size(); ++c) out.scores.col(static_cast<Eigen::Index>(c)) = listed_scores[c];
+    if (out.antecedents.size() > 1) add_thirds("spread of the antecedents", highest - lowest, d, survey, out);
     return out;
 }
 

@@ -35,11 +35,11 @@ PairReport compare(const Trial& trial, const Survey& survey, std::size_t a, std:
     pair.a = a;
     pair.b = b;
     pair.theories = first.is_theory && second.is_theory;
-    const Eigen::VectorXd d = first.row_loss - second.row_loss;
+    const Eigen::VectorXd d = without_rounding(first.row_loss - second.row_loss, second.row_loss.maxCoeff());
     pair.difference = d.mean();
     pair.relative = pair.difference / second.loss;
     pair.rows = survey.clusters.empty() ? row_test(d, level) : cluster_test(d, survey.clusters, survey.cluster_names.size(), level);
-    pair.corrected = corrected_test(first.split_loss - second.split_loss, trial.folds, pair.difference, level);
+    pair.corrected = corrected_test(without_rounding(first.split_loss - second.split_loss, second.split_loss.maxCoeff()), trial.folds, pair.difference, level);
     pair.p = std::isnan(pair.rows.p) || std::isnan(pair.corrected.p) ? kNaN : std::max(pair.rows.p, pair.corrected.p);
     pair.p_holm = kNaN;
     pair.low = std::min(pair.rows.low, pair.corrected.low);
@@ -91,7 +91,8 @@ void find_winner(const VerdictRules& rules, const Trial& trial, Verdict& verdict
 void add_repeat_spread(const Trial& trial, PairReport& pair) {
     pair.monte_carlo_se = kNaN;
     if (trial.repeats < 2) return;
-    pair.monte_carlo_se = standard_error(trial.contestants[pair.a].repeat_loss - trial.contestants[pair.b].repeat_loss, {}, 0);
+    const Eigen::VectorXd& b = trial.contestants[pair.b].repeat_loss;
+    pair.monte_carlo_se = standard_error(without_rounding(trial.contestants[pair.a].repeat_loss - b, b.maxCoeff()), {}, 0);
 }
 
 void share_first_places(const Trial& trial, Verdict& verdict) {

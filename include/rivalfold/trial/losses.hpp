@@ -50,14 +50,15 @@ struct StackLosses {
 /// What the held-out errors of the theories that finished have in common. Errors in units u_j, means over indicators and repeats.
 struct ErrorProducts {
     std::vector<std::size_t> members;  ///< contestant numbers, in file order
-    Eigen::MatrixXd products;          ///< n x m(m+1)/2: mean of e_a e_b, columns (0,0) (1,0) (1,1) (2,0) ...
+    Eigen::MatrixXd products;          ///< n x m(m-1)/2: mean of e_a e_b, columns (1,0) (2,0) (2,1) (3,0) ...
+    Eigen::MatrixXd squares;           ///< n x m: mean of e_a^2; empty where it is the row loss itself (loss: squared)
     Eigen::MatrixXd mean_error;        ///< n x m: actual - predicted mean of the target's indicators, in their own units
     StackLosses stack;
 
-    /// The column of `products` of members a and b.
+    /// The column of `products` of two different members.
     static Eigen::Index column(std::size_t a, std::size_t b) {
         const auto high = static_cast<Eigen::Index>(a > b ? a : b), low = static_cast<Eigen::Index>(a > b ? b : a);
-        return high * (high + 1) / 2 + low;
+        return high * (high - 1) / 2 + low;
     }
 };
 

@@ -12,4 +12,8 @@ namespace rivalfold {
 /// Exactly 0 where all differences are equal.
 double standard_error(const Eigen::VectorXd& d, const std::vector<int>& clusters, std::size_t n_clusters);
 
+/// Differences of losses of size `scale` that are rounding alone (all within 1e-12 of it) as exact zeros: two theories that make the same
+/// predictions by different routes must not be told apart by their last digits.
+Eigen::VectorXd without_rounding(Eigen::VectorXd d, double scale);
+
 }  // namespace rivalfold

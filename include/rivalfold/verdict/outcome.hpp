@@ -5,6 +5,7 @@
 #include "rivalfold/folds/fold_plan.hpp"
 #include "rivalfold/study/study.hpp"
 #include "rivalfold/trial/losses.hpp"
+#include "rivalfold/verdict/completeness.hpp"
 #include "rivalfold/verdict/verdict.hpp"
 
 #include <memory>
@@ -37,6 +38,7 @@ struct Outcome {
     std::vector<Reliability> reliabilities;
     Trial trial;
     Verdict verdict;
+    CompletenessReport completeness;  ///< computed only with verdict: completeness
     std::vector<std::string> advice;
     std::string segment_name;        ///< empty for the whole sample
     std::vector<Outcome> segments;   ///< the contest within each segment; empty without `segment`

@@ -54,11 +54,11 @@ struct Disagreement {
     };
     bool present = false;
     std::size_t first = 0, second = 0;       ///< contestants
-    std::vector<std::size_t> order;          ///< rows (indices), largest absolute difference first
-    Eigen::VectorXd actual;                  ///< n: mean of the target's indicators, in their own units
+    std::vector<std::size_t> rows;           ///< up to 10,000 sample rows, largest absolute difference of losses first
+    Eigen::VectorXd actual;                  ///< of these rows: mean of the target's indicators, in their own units
     Eigen::VectorXd predicted_first, predicted_second;
     std::vector<std::string> antecedents;
-    Eigen::MatrixXd scores;                  ///< n x antecedents, standard units
+    Eigen::MatrixXd scores;                  ///< of these rows: rows x antecedents, standard units
     std::vector<Third> thirds;
 };
 

@@ -20,7 +20,8 @@ Files
                    averaged over repeats (in units u_j; see help losses)
    folds.csv       row, repeat, fold: the splits that were used. Give it back as
                    trial: {folds_file: ...} here or feed it to another program
-   disagreements.csv  the two best-ranked theories row by row, largest
+   disagreements.csv  the two best-ranked theories row by row (10,000 rows at
+                   most), largest
                    difference of losses first: actual and predicted means of the
                    target's items in their own units, both losses, and the
                    antecedents' scores (standard units)
@@ -123,6 +124,13 @@ results.json (schema 1)
                      antecedent, or their spread), third (1 lowest .. 3
                      highest), from, to (standard units), rows, difference
                      (loss of first minus loss of second), se
+   completeness      with verdict: {completeness: true}: rows (of the comparison),
+                     subsample, loss_mean, loss_flexible, q2_flexible (share),
+                     antecedents (of the random outcomes), seconds, and for each
+                     of theories: completeness with low and high, the ends of
+                     its interval, restrictiveness with restrictiveness_se, its
+                     Monte Carlo error (shares); reason: what was done on fewer
+                     rows
    winner            the theory that beats every rival, or null
    segments          with `segment`: this whole object again for each, with
                      segment, its name
