@@ -2,6 +2,7 @@
 
 #include "rivalfold/trial/standard_error.hpp"
 #include "rivalfold/verdict/distributions.hpp"
+#include "verdict/p_words.hpp"
 
 #include <fmt/format.h>
 
@@ -46,8 +47,6 @@ bool has_predicted_mediator(const Blueprint& plan) {
     const std::vector<int>& blocks = plan.target_plan().predecessors;
     return std::any_of(blocks.begin(), blocks.end(), [&](int block) { return plan.equation_of(block) >= 0; });
 }
-
-std::string p_words(double p) { return p < 0.001 ? "p < .001" : fmt::format("p = {}", fmt::format("{:.3f}", p).substr(p < 0.9995 ? 1 : 0)); }
 
 }  // namespace
 

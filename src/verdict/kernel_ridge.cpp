@@ -68,22 +68,32 @@ KernelRidge fit_kernel_ridge(Eigen::MatrixXd kernel, const Eigen::MatrixXd& y, d
     return out;
 }
 
+// Within the complement of the ones, spanned by all but the first column of the reflection H = I - b vv' that turns 1 / sqrt n into -e_1:
+// there the ones, an eigenvector of CKC with value 0, cost no digits.
 LeaveOneOut::LeaveOneOut(const Eigen::MatrixXd& kernel, const Eigen::MatrixXd& y) {
-    const Eigen::VectorXd row_mean = kernel.rowwise().mean();
-    Eigen::MatrixXd centred = kernel;
-    centred.colwise() -= row_mean;
-    centred.rowwise() -= row_mean.transpose();
-    centred.array() += row_mean.mean();
-    const Eigen::Tridiagonalization<Eigen::MatrixXd> reduced(centred);
-    basis_ = reduced.matrixQ();
+    const Eigen::Index n = kernel.rows();
+    Eigen::VectorXd v = Eigen::VectorXd::Constant(n, 1 / std::sqrt(static_cast<double>(n)));
+    v(0) += 1;
+    const double b = 2 / v.squaredNorm();
+    const Eigen::VectorXd w = kernel * v;
+    const Eigen::VectorXd u = b * w - (b * b / 2 * v.dot(w)) * v;  // HKH = K - uv' - vu'
+    Eigen::MatrixXd inside = kernel.bottomRightCorner(n - 1, n - 1);
+    inside.noalias() -= u.tail(n - 1) * v.tail(n - 1).transpose();
+    inside.noalias() -= v.tail(n - 1) * u.tail(n - 1).transpose();
+    const Eigen::Tridiagonalization<Eigen::MatrixXd> reduced(inside);
+    basis_.resize(n, n - 1);
+    basis_.row(0).setZero();
+    basis_.bottomRows(n - 1) = reduced.matrixQ();
+    const Eigen::RowVectorXd along = v.transpose() * basis_;
+    basis_.noalias() -= b * v * along;
     diagonal_ = reduced.diagonal();
     beside_ = reduced.subDiagonal();
     rotated_.noalias() = basis_.transpose() * (y.rowwise() - y.colwise().mean());
 }
 
-// T + penalty = L D L' with a unit bidiagonal L. A row of P L^-T gives the diagonal of (CKC + penalty)^-1, column after column.
+// T + penalty = L D L' with a unit bidiagonal L. The rows of P L^-T, column after column, give the diagonal of P (T + penalty)^-1 P'.
 Eigen::MatrixXd LeaveOneOut::residuals(double penalty) const {
-    const Eigen::Index n = diagonal_.size();
+    const Eigen::Index n = diagonal_.size();  // one less than rows
     Eigen::VectorXd pivot(n), below = Eigen::VectorXd::Zero(n);  // D, and L(k + 1, k)
     pivot(0) = diagonal_(0) + penalty;
     for (Eigen::Index k = 1; k < n; ++k) {
@@ -100,10 +110,9 @@ Eigen::MatrixXd LeaveOneOut::residuals(double penalty) const {
     }
     dual.array().colwise() /= pivot.array();
     for (Eigen::Index k = n - 1; k-- > 0;) dual.row(k) -= below(k) * dual.row(k + 1);
-    Eigen::MatrixXd out(n, rotated_.cols());
+    Eigen::MatrixXd out(basis_.rows(), rotated_.cols());
     out.noalias() = basis_ * dual;
-    // residual = penalty x dual, 1 - S_ii = penalty x inverse_ii - 1/n: the ones are an eigenvector of CKC with value 0.
-    out.array().colwise() *= penalty / (penalty * inverse_diagonal.array() - 1 / static_cast<double>(n));
+    out.array().colwise() /= inverse_diagonal.array();  // residual and 1 - S_ii, both without their factor, the penalty
     return out;
 }
 

@@ -29,8 +29,8 @@ struct KernelRidge {
 /// One Cholesky factorisation, n^3 / 3 operations; relative accuracy about 1e-16 x n / penalty.
 KernelRidge fit_kernel_ridge(Eigen::MatrixXd kernel, const Eigen::MatrixXd& y, double penalty);
 
-/// Leave-one-out residuals for any number of penalties from one reduction of the centred kernel, CKC = P T P' with T tridiagonal (as
-/// Elden 1977, BIT 17, 134-145, does for ridge regression). It serves every penalty as the eigendecomposition of Rifkin & Lippert (2007,
+/// Leave-one-out residuals for any number of penalties from one reduction of the centred kernel, CKC = P T P' with T tridiagonal and the
+/// columns of P orthogonal to the ones (as Elden 1977, BIT 17, 134-145, does for ridge regression). It serves every penalty as the eigendecomposition of Rifkin & Lippert (2007,
 /// Notes on regularized least squares, MIT-CSAIL-TR-2007-025) does, in O(n^2) each, at a third of the time: T stays undiagonalised.
 class LeaveOneOut {
 public:
@@ -42,7 +42,7 @@ public:
     Eigen::MatrixXd residuals(double penalty) const;
 
 private:
-    Eigen::MatrixXd basis_;      // P
+    Eigen::MatrixXd basis_;      // P, n x (n - 1)
     Eigen::VectorXd diagonal_;   // of T
     Eigen::VectorXd beside_;     // subdiagonal of T
     Eigen::MatrixXd rotated_;    // P'C y

@@ -1,6 +1,7 @@
 #include "rivalfold/verdict/reversals.hpp"
 
 #include "rivalfold/verdict/distributions.hpp"
+#include "verdict/p_words.hpp"
 
 #include <fmt/format.h>
 
@@ -63,8 +64,8 @@ std::string in_words(const Outcome& whole, const Reversal& r) {
         return fmt::format("{:+.4f} in \"{}\"", difference, whole.segments[segment].segment_name);
     };
     const bool turns = (r.difference_first < 0) != (r.difference_second < 0);
-    return fmt::format("The segments differ: loss of \"{}\" minus loss of \"{}\" is {} and {} (difference {:+.4f}, interval {:+.4f} to {:+.4f}, p Holm {:.3f}){}", a, b,
-                       side(r.difference_first, r.first), side(r.difference_second, r.second), r.difference, r.low, r.high, r.p_holm,
+    return fmt::format("The segments differ: loss of \"{}\" minus loss of \"{}\" is {} and {} (difference {:+.4f}, interval {:+.4f} to {:+.4f}, Holm-adjusted {}){}", a, b,
+                       side(r.difference_first, r.first), side(r.difference_second, r.second), r.difference, r.low, r.high, p_words(r.p_holm),
                        turns ? "; the order of the two turns round." : "; the order of the two stays.");
 }
 

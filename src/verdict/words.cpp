@@ -1,4 +1,5 @@
 #include "verdict/words.hpp"
+#include "verdict/p_words.hpp"
 
 #include <fmt/format.h>
 
@@ -14,8 +15,6 @@ std::string list_names(const Trial& trial, const std::vector<std::size_t>& conte
         text += fmt::format("{}\"{}\"", i == 0 ? "" : i + 1 == contestants.size() ? " and " : ", ", trial.contestants[contestants[i]].name);
     return text;
 }
-
-std::string p_words(double p) { return p < 0.001 ? "p < .001" : fmt::format("p = {}", fmt::format("{:.3f}", p).substr(p < 0.9995 ? 1 : 0)); }
 
 const PairReport* pair_of(const Verdict& verdict, std::size_t a, std::size_t b) {
     for (const PairReport& pair : verdict.pairs)
