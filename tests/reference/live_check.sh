@@ -1,6 +1,7 @@
 #!/bin/sh
 # Runs every study of studies/, outside/studies/, examples/ and open_data/ with the program, then again in plain numpy on the splits that the program
-# used, and compares every number: one line per study with the largest relative disagreement.
+# used, and compares every number: one line per study with the largest relative disagreement. Segments are compared with the
+# same contest on the segment's rows alone; the model confidence sets of bfi and lq2002 with those of a third program.
 #   live_check.sh PROGRAM [STUDY.yaml ...]
 # Status 1 where a study fails or disagrees by more than 1e-9; the work folder is then kept and named.
 set -u
@@ -28,6 +29,34 @@ check() {  # STUDY.yaml, by its absolute path
   else
     echo "WRONG   $name:"; echo "$line" | sed 's/^/        /'; status=1
   fi
+  if grep -q '"segments":' "$out/results.json"; then segments "$1"; fi
+}
+
+segments() {  # STUDY.yaml: each segment as a study of its own shows the splits that the contest within it used
+  if ! "$PYTHON" "$here/segment_alone.py" "$1" "$out.segments" 2>"$out.log"; then
+    echo "WRONG   $name: segment_alone.py failed: $(tail -n 1 "$out.log")"; status=1; return
+  fi
+  for alone in "$out.segments"/*; do
+    segment=$(cat "$alone/name.txt")
+    if "$program" run "$alone/study.yaml" -o "$alone/out" >"$out.log" 2>&1 &&
+       "$PYTHON" "$here/plain_contest.py" "$alone/study.yaml" --folds "$alone/out/folds.csv" -o "$alone/plain.json" 2>"$out.log" &&
+       line=$("$PYTHON" "$here/compare_results.py" "$alone/plain.json" "$out/results.json" --segment "$segment" --brief); then
+      echo "ok      $name, segment $segment: $line"
+    else
+      echo "WRONG   $name, segment $segment: ${line:-$(tail -n 1 "$out.log")}"; status=1
+    fi
+    line=
+  done
+}
+
+confidence_set() {  # STUDY.yaml FROZEN.json KEY, after check STUDY.yaml
+  name="$(basename "$(dirname "$1")")/$(basename "$1" .yaml)"
+  out="$work/$(echo "$name" | tr '/ ' '__')"
+  if line=$("$PYTHON" "$here/model_confidence_set.py" "$out/losses.csv" "$out/results.json" "$2" "$3"); then
+    echo "ok      confidence set of $name: $line"
+  else
+    echo "WRONG   confidence set of $name: ${line:-did not run}"; status=1
+  fi
 }
 
 two_blocks() {  # STUDY.yaml: weights that are known without iterating
@@ -54,6 +83,12 @@ else
     Rscript "$here/export_open_data.R" "$work/open" | grep skipped
     for study in "$work"/open/*/study.yaml "$work"/open/*/study_absolute.yaml "$work"/open/*/study_predicted.yaml; do
       if [ -f "$study" ]; then check "$study"; fi
+    done
+    for folder in "$work"/open/*; do
+      [ -f "$folder/data.csv" ] || continue
+      confidence_set "$folder/study.yaml" "$folder/confidence_set.json" direct.sq.rows
+      confidence_set "$folder/study_absolute.yaml" "$folder/confidence_set.json" direct.abs.rows
+      confidence_set "$folder/study_predicted.yaml" "$folder/confidence_set.json" exogenous.sq.rows
     done
   else
     echo "skipped: bfi and lq2002 need R with psychTools and multilevel"
