@@ -12,8 +12,10 @@ leaves the old folder or the new one, never half of one.
 Files
    results.json    everything below, at full double precision (17 digits)
    ranking.csv     the ranked table, one contestant a line; kind: theory or
-                   benchmark
-   pairs.csv       one pair of contestants a line, with both tests
+                   benchmark; p_set_range, p_set_max: its confidence_set
+   pairs.csv       one pair of contestants a line, with both tests; rows_ and
+                   corrected_ stand before the fields of either; a_knows_more_p,
+                   b_knows_more_p, extra_terms_p: p of encompassing and nested
    indicators.csv  held-out errors of each target item, one contestant and item
                    a line, in the item's own units
    losses.csv      row, then one column per contestant: L(t, i), the row's loss
@@ -21,10 +23,9 @@ Files
    folds.csv       row, repeat, fold: the splits that were used. Give it back as
                    trial: {folds_file: ...} here or feed it to another program
    disagreements.csv  the two best-ranked theories row by row (10,000 rows at
-                   most), largest
-                   difference of losses first: actual and predicted means of the
-                   target's items in their own units, both losses, and the
-                   antecedents' scores (standard units)
+                   most), largest difference of losses first: actual and
+                   predicted means of the target's items in their own units,
+                   both losses, and the antecedents' scores (standard units)
    table.md        the ranked table with its notes, in Markdown
    study.yaml      the study as run, byte for byte
    manifest.json   version, SHA-256 of study and data, seed, times, thread count
@@ -115,22 +116,23 @@ results.json (schema 1)
                      words
      verdict         first predicts better, second predicts better,
                      practically equal, or unresolved
-   stack             the stacked combination of theories: loss; weights (name,
+   stack             null with fewer than two theories that did not fail;
+                     the stacked combination of theories: loss; weights (name,
                      weight: means over splits); difference and relative to the
                      best-ranked theory; rows, corrected: the two tests;
                      complementary: better by both and by more than `margin`;
                      words
-   disagreement      first, second: the two best-ranked; thirds: along (an
-                     antecedent, or their spread), third (1 lowest .. 3
-                     highest), from, to (standard units), rows, difference
-                     (loss of first minus loss of second), se
-   completeness      with verdict: {completeness: true}: rows (of the comparison),
-                     subsample, loss_mean, loss_flexible, q2_flexible (share),
-                     antecedents (of the random outcomes), seconds, and for each
-                     of theories: completeness with low and high, the ends of
-                     its interval, restrictiveness with restrictiveness_se, its
-                     Monte Carlo error (shares); reason: what was done on fewer
-                     rows
+   disagreement      null where stack is; first, second: the two best-ranked;
+                     thirds: along (an antecedent, or their spread), third (1
+                     lowest .. 3 highest), from, to (standard units), rows,
+                     difference (loss of first minus loss of second), se
+   completeness      with verdict: {completeness: true}: rows (of the
+                     comparison), subsample, loss_mean, loss_flexible,
+                     q2_flexible (share), antecedents (of the random outcomes),
+                     and for each of theories: completeness with low and high,
+                     the ends of its interval, restrictiveness with
+                     restrictiveness_se, its Monte Carlo error (shares); reason:
+                     what was done on fewer rows
    winner            the theory that beats every rival, or null
    segments          with `segment`: this whole object again for each, with
                      segment, its name
