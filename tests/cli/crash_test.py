@@ -12,10 +12,9 @@ import sys
 import time
 import unittest
 
-from running import Place
+from running import FILES, Place
 
 PROGRAM = sys.argv.pop(1)
-FILES = {"folds.csv", "indicators.csv", "losses.csv", "manifest.json", "pairs.csv", "ranking.csv", "results.json", "study.yaml", "table.md"}
 REPEATS = 400
 
 
@@ -34,14 +33,14 @@ class Crash(unittest.TestCase):
     def whole(self):
         """The seed of the results in the folder, after making sure that they are whole and of one run."""
         folder = self.place.folder / "out"
-        self.assertEqual({path.name for path in folder.iterdir()}, FILES)
+        self.assertEqual({path.name for path in folder.iterdir()}, set(FILES))
         results = json.loads(self.place.read("out/results.json"))
         manifest = json.loads(self.place.read("out/manifest.json"))
         seed = results["trial"]["seed"]
         self.assertEqual(manifest["seed"], seed)
         self.assertEqual(manifest["study"]["sha256"], hashlib.sha256((folder / "study.yaml").read_bytes()).hexdigest())
         self.assertIn(f"seed: {seed}}}", self.place.read("out/study.yaml"))
-        for name, lines in (("losses.csv", 25), ("folds.csv", 24 * REPEATS + 1), ("pairs.csv", 7), ("ranking.csv", 5), ("indicators.csv", 9)):
+        for name, lines in (("losses.csv", 25), ("folds.csv", 24 * REPEATS + 1), ("pairs.csv", 7), ("ranking.csv", 5), ("indicators.csv", 9), ("disagreements.csv", 25)):
             text = self.place.read(f"out/{name}")
             rows = list(csv.reader(io.StringIO(text)))
             self.assertEqual((len(rows), {len(row) for row in rows}, text[-1]), (lines, {len(rows[0])}, "\n"), name)
@@ -143,7 +142,7 @@ class Crash(unittest.TestCase):
         for given, made in (("two words", "two words"), ("with a slash/", "with a slash"), ("./-dash", "-dash"), ("über/", "über")):
             said = self.place.run("run", "study.yaml", "-o", given)
             self.assertEqual((said.status, said.err.splitlines()[-1]), (0, f"results: {given}"))
-            self.assertEqual({path.name for path in (self.place.folder / made).iterdir()}, FILES)
+            self.assertEqual({path.name for path in (self.place.folder / made).iterdir()}, set(FILES))
         self.assertEqual(self.place.run("run", "study.yaml").status, 0)
         self.assertTrue((self.place.folder / "study.results" / "results.json").exists())
         self.assertEqual(self.left_overs(), [])
@@ -153,7 +152,7 @@ class Crash(unittest.TestCase):
             process = self.place.start("run", "study.yaml", "-o", "out", stdout=full, stderr=subprocess.PIPE)
             err = process.communicate()[1].decode()
         self.assertEqual((process.returncode, err.splitlines()[-1]), (1, "rivalfold: error: standard output could not be written in full"))
-        self.assertEqual({path.name for path in (self.place.folder / "out").iterdir()}, FILES)
+        self.assertEqual({path.name for path in (self.place.folder / "out").iterdir()}, set(FILES))
 
 
 if __name__ == "__main__":

@@ -9,6 +9,10 @@ from dataclasses import dataclass
 HERE = pathlib.Path(__file__).resolve().parent
 ROOT = HERE.parent.parent
 
+# Every file of a results folder; `help outputs` names them all.
+FILES = ["disagreements.csv", "folds.csv", "indicators.csv", "losses.csv", "manifest.json", "pairs.csv", "ranking.csv", "results.json",
+         "study.yaml", "table.md"]
+
 
 @dataclass
 class Said:
