@@ -33,10 +33,16 @@ fi
 rerun "$PYTHON" paired_t.py paired_t_scipy.csv
 rerun "$PYTHON" corrected_t.py corrected_t.csv
 rerun "$PYTHON" simplex_weights.py simplex_weights.json
+rerun "$PYTHON" welch.py welch.csv
 rerun "$PYTHON" two_blocks.py two_blocks.csv linnerud_mode_a.json linnerud_mode_b.json swiss_mode_a.json swiss_mode_b.json
 if "$PYTHON" -c 'import statsmodels.api' >/dev/null 2>&1; then
   rerun "$PYTHON" cluster_se.py cluster_se.csv
 else
   echo "skipped: cluster_se.py needs statsmodels (Debian: python3-statsmodels)"
+fi
+if "$PYTHON" -c 'import sklearn' >/dev/null 2>&1; then
+  rerun "$PYTHON" kernel_ridge.py kernel_ridge.csv flexible_linnerud.csv
+else
+  echo "skipped: kernel_ridge.py needs scikit-learn (Debian: python3-sklearn)"
 fi
 exit $status
