@@ -19,15 +19,14 @@ Disagreement is |x - y| / max(|x|, |y|, floor). The floors keep a number that is
   AIC, AICc, BIC, HQ, GM                   1
   p-values and BIC weights                 1e-12
   ends of the thirds                       0.001
-  differences of reversals and thirds      a thousandth of a loss
-  losses and differences of the stack      its loss
-Everything else is relative. The weights of a stack, which theories that resemble each other leave free, need agree to 1e-6
-only, absolutely, and its t and p to loss / se times the tolerance. The p-values of the model confidence set come from two
-bootstraps: within .02 and two Monte Carlo standard errors. Where EXPECTED finds the predictions of a pair equal, so that
-there is no test, the other file must have none. The tests of a pair whose standard error is below 1e-10 of the losses (the same predictions
-up to rounding) are not compared. Ranks must be equal unless the losses agree to 1e-9. With --losses the losses of every
-row are compared too (columns by name), with a floor of a thousandth of the contestant's mean loss; --parted does the same
-for disagreements.csv, whose rows must stand with the largest difference first.
+  differences of reversals, thirds, stack  a thousandth of a loss
+  weights of the stack                     1
+Everything else is relative. The p-values of the model confidence set come from two bootstraps: within .02 and two Monte
+Carlo standard errors. Where EXPECTED finds the predictions of a pair equal, so that there is no test, the other file must
+have none; without such a finding the tests of a pair whose standard error is below 1e-10 of the losses (the same
+predictions up to rounding) are not compared. Ranks must be equal unless the losses agree to 1e-9. With --losses the losses
+of every row are compared too (columns by name), with a floor of a thousandth of the contestant's mean loss; --parted does
+the same for disagreements.csv, whose rows must stand with the largest difference first.
 """
 import argparse
 import csv
@@ -54,7 +53,7 @@ class Comparison:
         if x != y:
             self.absent.append(f"{where}, {what}: expected {x!r}, the other file has {'nothing' if y is ABSENT else repr(y)}")
 
-    def number(self, quantity, where, x, y, floor=None, slack=1.0):
+    def number(self, quantity, where, x, y, floor=None, slack=1.0):  # slack: how many tolerances are allowed
         if x is None or x is ABSENT or isinstance(x, (str, dict, list)):
             return
         if not isinstance(y, (int, float)) or isinstance(y, bool):
@@ -210,17 +209,13 @@ def compare_pairs(c, xs, ys, losses):
 
 
 def compare_stack(c, x, y):
-    """Losses as shares of the loss: the weights move all of them a little. t = difference / se moves by loss / se as much."""
     loss = x["loss"]
-    c.number("stack.loss", "stack", loss, y.get("loss", ABSENT))
-    c.number("stack.difference", "stack", x["difference"], y.get("difference", ABSENT), loss)
-    c.number("stack.relative", "stack", x["relative"], y.get("relative", ABSENT), 1.0)
+    floors = dict.fromkeys(("difference", "low", "high"), 1e-3 * loss)
+    c.mapping("stack", "stack", x, y, floors)
     for test in ("rows", "corrected"):
-        share = loss / x[test]["se"] if x[test]["se"] else None
-        floors = {"se": loss, "low": loss, "high": loss, "relative_low": 1.0, "relative_high": 1.0, "t": share, "p": share}
         c.mapping(f"stack.{test}", "stack", x[test], y.get(test), floors)
     for i, j in c.matched("weight of", "name", "stack", x["weights"], y.get("weights")):
-        c.number("stack.weights", i["name"], i["weight"], j["weight"], floor=1.0, slack=1000.0)
+        c.number("stack.weights", i["name"], i["weight"], j["weight"], floor=1.0)
     c.same("stack", "complementary", x["complementary"], y.get("complementary", ABSENT))
 
 

@@ -70,7 +70,7 @@ TEST_CASE("non-negative least squares are those of scipy", "[simplex]") {
         if (item["x"].is_null()) continue;
         const VectorXd expected = vector_of(item["x"]);
         for (Index j = 0; j < x.size(); ++j) {
-            CHECK(x(j) == Approx(expected(j)).margin(1e-10).epsilon(1e-10));
+            CHECK(x(j) == Approx(expected(j)).margin(1e-12).epsilon(1e-12));
             CHECK((x(j) == 0) == (expected(j) == 0));
         }
     }
@@ -104,7 +104,7 @@ TEST_CASE("stacking weights are those of scipy, by two routes", "[simplex]") {
         if (item["weights"].is_null()) continue;
         const VectorXd expected = vector_of(item["weights"]), by_slsqp = vector_of(item["slsqp"]);
         for (Index j = 0; j < w.size(); ++j) {
-            CHECK(w(j) == Approx(expected(j)).margin(1e-10));
+            CHECK(w(j) == Approx(expected(j)).margin(1e-12));
             CHECK(w(j) == Approx(by_slsqp(j)).margin(1e-6));
         }
     }
@@ -127,14 +127,14 @@ TEST_CASE("stacking weights have the smallest spread of all combinations, howeve
 TEST_CASE("two theories share by the textbook formula, uncorrelated ones in inverse proportion to their squared errors", "[simplex]") {
     MatrixXd g(2, 2);
     g << 4, 1, 1, 2;  // w1 = (g22 - g12) / (g11 + g22 - 2 g12)
-    CHECK(stacking_weights(g)(0) == Approx(0.25).margin(1e-9));
+    CHECK(stacking_weights(g)(0) == Approx(0.25).margin(1e-13));
     g << 4, 2.5, 2.5, 2;  // the covariance exceeds the smaller variance: all weight on one
     CHECK(stacking_weights(g)(0) == 0);
     CHECK(stacking_weights(g)(1) == 1);
     const VectorXd w = stacking_weights(Eigen::Vector3d(1, 2, 4).asDiagonal());
-    CHECK(w(0) == Approx(4.0 / 7).margin(1e-9));
-    CHECK(w(1) == Approx(2.0 / 7).margin(1e-9));
-    CHECK(w(2) == Approx(1.0 / 7).margin(1e-9));
+    CHECK(w(0) == Approx(4.0 / 7).margin(1e-13));
+    CHECK(w(1) == Approx(2.0 / 7).margin(1e-13));
+    CHECK(w(2) == Approx(1.0 / 7).margin(1e-13));
 }
 
 TEST_CASE("stacking weights do not depend on the unit of the errors", "[simplex]") {
@@ -142,7 +142,7 @@ TEST_CASE("stacking weights do not depend on the unit of the errors", "[simplex]
     const VectorXd w = stacking_weights(g);
     for (const double unit : {1e-12, 1e-3, 1e9}) {
         const VectorXd scaled = stacking_weights(g * unit);
-        for (Index j = 0; j < w.size(); ++j) CHECK(scaled(j) == Approx(w(j)).margin(1e-10));
+        for (Index j = 0; j < w.size(); ++j) CHECK(scaled(j) == Approx(w(j)).margin(1e-13));
     }
 }
 
@@ -152,8 +152,8 @@ TEST_CASE("theories that predict the same share a weight that is theirs together
     const VectorXd alone = stacking_weights(g), doubled = stacking_weights(g(twice, twice));
     CHECK(doubled.allFinite());
     CHECK(doubled.minCoeff() >= 0);
-    CHECK(doubled(0) == Approx(alone(0)).margin(1e-8));
-    CHECK(doubled(1) + doubled(3) == Approx(alone(1)).margin(1e-8));
+    CHECK(doubled(0) == Approx(alone(0)).margin(1e-12));
+    CHECK(doubled(1) + doubled(3) == Approx(alone(1)).margin(1e-12));
     const VectorXd same = stacking_weights(MatrixXd::Constant(3, 3, 2.5));
     CHECK(same.allFinite());
     CHECK(same.minCoeff() >= 0);
