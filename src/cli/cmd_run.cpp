@@ -40,6 +40,7 @@ int run_run(const RunOptions& options) {
     save_contest(outcome, folder);
     print(stdout, write_tables(outcome, style_of(stdout)));
     print(stderr, write_advice(outcome.advice, style_of(stderr)));
+    if (outcome.study.verdict.completeness) print(stderr, fmt::format("completeness took {:.1f} s\n", outcome.completeness.seconds));
     print(stderr, fmt::format("results: {}\n", folder));
     return kDone;
 }

@@ -27,6 +27,7 @@ namespace {
 namespace fs = std::filesystem;
 
 constexpr std::string_view kBeside = ".rivalfold-";
+constexpr std::string_view kSetAside = ".old";
 constexpr std::size_t kLongestName = 220;
 
 std::string in_words(int error) { return std::strerror(error); }
@@ -48,17 +49,23 @@ void write_file(const fs::path& path, const Outcome& outcome, const ResultFile& 
     if (std::fflush(out.get()) != 0) fail();  // no fsync: a killed process loses nothing, and a power cut may
 }
 
-/// Folders `.<name>.rivalfold-<process>` whose process is gone, or that an earlier process with our number left.
+/// Folders `.<name>.rivalfold-<process>` whose process is gone, or that an earlier process with our number left. An old result that was
+/// set aside (`...old`, see put_in_place) by a process that died before the new one was in place goes back first.
 void remove_left_overs(const fs::path& parent, const std::string& name) {
     const std::string prefix = "." + name + std::string(kBeside);
     std::error_code ignored;
     for (const fs::directory_entry& entry : fs::directory_iterator(parent, ignored)) {
         const std::string found = entry.path().filename().string();
         if (found.rfind(prefix, 0) != 0) continue;
-        const std::string tail = found.substr(prefix.size());
+        std::string tail = found.substr(prefix.size());
+        const bool set_aside = tail.ends_with(kSetAside);
+        if (set_aside) tail.resize(tail.size() - kSetAside.size());
         if (tail.empty() || tail.find_first_not_of("0123456789") != std::string::npos || tail.size() > 9) continue;
         const auto process = static_cast<pid_t>(std::stol(tail));
-        if (process == getpid() || (kill(process, 0) != 0 && errno == ESRCH)) fs::remove_all(entry.path(), ignored);
+        if (process == getpid() || (kill(process, 0) != 0 && errno == ESRCH)) {
+            if (set_aside && !fs::exists(parent / name, ignored)) fs::rename(entry.path(), parent / name, ignored);
+            fs::remove_all(entry.path(), ignored);
+        }
     }
 }
 
@@ -69,7 +76,7 @@ void put_in_place(const fs::path& made, const fs::path& place) {
     }
     if (renameat2(AT_FDCWD, made.c_str(), AT_FDCWD, place.c_str(), RENAME_EXCHANGE) != 0) {
         // File systems without an exchange: two steps, the old folder kept under the temporary name in between.
-        const fs::path old = made.string() + ".old";
+        const fs::path old = made.string() + std::string(kSetAside);
         if (std::rename(place.c_str(), old.c_str()) != 0) throw SaveError(fmt::format("cannot replace {}: {}", place.string(), in_words(errno)));
         if (std::rename(made.c_str(), place.c_str()) != 0) {
             const int error = errno;

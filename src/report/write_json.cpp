@@ -216,16 +216,16 @@ void emit(const Json& json, const Sink& sink) {
 void write_results_json(const Outcome& outcome, const Sink& sink) { emit(whole_object(outcome), sink); }
 
 void write_manifest_json(const Outcome& outcome, const Sink& sink) {
-    // Times stand here and nowhere else: results.json is the same byte for byte however often the study is run.
-    emit({{"rivalfold", outcome.run.version},
-          {"schema", 1},
-          {"study", {{"file", outcome.study.path}, {"sha256", outcome.run.study_sha256}}},
-          {"data", {{"file", outcome.study.data.file.text}, {"sha256", outcome.survey.sha256}}},
-          {"seed", outcome.study.trial.folds_file ? Json(nullptr) : Json(outcome.study.trial.seed)},
-          {"started", outcome.run.started},
-          {"seconds", outcome.run.seconds},
-          {"threads", outcome.run.threads}},
-         sink);
+    Json json = {{"rivalfold", outcome.run.version},
+                 {"schema", 1},
+                 {"study", {{"file", outcome.study.path}, {"sha256", outcome.run.study_sha256}}},
+                 {"data", {{"file", outcome.study.data.file.text}, {"sha256", outcome.survey.sha256}}},
+                 {"seed", outcome.study.trial.folds_file ? Json(nullptr) : Json(outcome.study.trial.seed)},
+                 {"started", outcome.run.started},
+                 {"seconds", outcome.run.seconds},
+                 {"threads", outcome.run.threads}};
+    if (outcome.study.verdict.completeness) json["completeness_seconds"] = outcome.completeness.seconds;
+    emit(json, sink);
 }
 
 }  // namespace rivalfold

@@ -144,7 +144,7 @@ std::string completeness_table(const Outcome& outcome, const TerminalStyle& styl
     return table.render(static_cast<std::size_t>(style.width)) + reasons + "\n" +
            paragraph(fmt::format("The flexible benchmark (kernel ridge regression, no form assumed) has loss {} and q2 {} on {} rows. completeness: the share of what it gains over the training mean "
                                  "that a theory gains too. restrictiveness: mean squared error of the theory's equation on random smooth outcomes, 1 for a theory that could fit none of them, near 0 for "
-                                 "one that could fit anything and so earns little by fitting this. It took {:.1f} s. {}", fixed(report.loss_flexible, 4), fixed(report.q2_flexible, 3), report.rows, report.seconds, plain(report.note)), style);
+                                 "one that could fit anything and so earns little by fitting this. {}", fixed(report.loss_flexible, 4), fixed(report.q2_flexible, 3), report.rows, plain(report.note)), style);
 }
 
 std::string segments_table(const Outcome& outcome, const TerminalStyle& style) {

@@ -103,7 +103,7 @@ Criteria criteria_of(double sse, double n, double p, double mse_full) {
     out.gm = mse_full > 0 ? sse / mse_full + p * std::log(n) : kNaN;
     out.bic_weight = kNaN;
     if (std::isnan(out.aicc)) out.reason = "AICc needs more rows than coefficients + 1";
-    if (std::isnan(out.gm)) out.reason = "GM needs a full model with residual degrees of freedom";
+    if (std::isnan(out.gm)) out.reason += std::string(out.reason.empty() ? "" : "; ") + "GM needs a full model with residual degrees of freedom";
     return out;
 }
 

@@ -56,7 +56,7 @@ std::string shortlist_words(const Study& study, const Survey& survey, const Tria
     }
     std::string text = fmt::format("No single winner: \"{}\" ranks first, but these data cannot tell which theory predicts best. ", trial.contestants[ranked.front()].name);
     text += kept.size() == 1 ? fmt::format("The shortlist (model confidence set at {:g}) holds only {}, yet the paired tests do not separate it from every rival", study.verdict.level, list_names(trial, kept))
-                             : fmt::format("The shortlist that holds the best theory (model confidence set at {:g}): {}", study.verdict.level, list_names(trial, kept));
+                             : fmt::format("The shortlist of theories that may be the best (model confidence set at {:g}): {}", study.verdict.level, list_names(trial, kept));
     text += out.empty() ? "." : fmt::format("; not on it: {}.", list_names(trial, out));
     if (!equal.empty()) text += fmt::format(" Practically equal to the first (within {:.4g}%): {}.", 100 * study.verdict.margin, list_names(trial, equal));
     if (!worse.empty()) text += fmt::format(" Shown to predict worse than the first: {}.", list_names(trial, worse));
@@ -92,7 +92,9 @@ void put_into_words(const Study& study, const Survey& survey, const Trial& trial
         TheoryReport& theory = verdict.theories[t];
         theory.verdict = theory_words(trial, verdict, t, ranked);
         if (!trial.contestants[t].failed && !trial.whole[t].failed)
-            theory.optimism = fmt::format("explains {:.0f}% of the indicators' variance in the sample it was fitted to, predicts {:.0f}% of it in new rows", 100 * theory.explained, 100 * trial.contestants[t].q2);
+            theory.optimism = fmt::format("explains {:.0f}% of the indicators' variance in the sample it was fitted to, {}", 100 * theory.explained,
+                                          trial.contestants[t].q2 < 0 ? std::string("but predicts new rows worse than their mean does")
+                                                                      : fmt::format("predicts {:.0f}% of it in new rows", 100 * trial.contestants[t].q2));
     }
     for (const PairReport& pair : verdict.pairs)
         if (pair.theories && pair.a == ranked.front() && pair.b_knows_more.p < study.verdict.level && !pair.inner)
