@@ -43,6 +43,8 @@ std::string ranked_table(const Outcome& outcome, const TerminalStyle& style) {
         table.add({theory ? std::to_string(theory->rank) : "", (theory ? "" : "~ ") + plain(losses.name), fixed(losses.loss, 4), fixed(losses.rmse, 4), fixed(losses.mae, 4),
                    fixed(losses.q2, 3), theory ? fixed(theory->explained, 3) : "", theory ? fixed(theory->bic_difference, 1) : "", theory ? p_text(theory->p_set_max) : ""});
     }
+    if (outcome.completeness.computed)
+        table.add({"", "~ flexible benchmark", fixed(outcome.completeness.loss_flexible, 4), "", "", fixed(outcome.completeness.q2_flexible, 3), "", "", ""});
     for (const TheoryReport& theory : outcome.verdict.theories)
         if (outcome.trial.contestants[theory.contestant].failed)
             table.add({"-", plain(outcome.trial.contestants[theory.contestant].name), "failed", "-", "-", "-", "-", fixed(theory.bic_difference, 1), "-"});
