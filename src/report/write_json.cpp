@@ -183,6 +183,7 @@ Json whole_object(const Outcome& outcome) {
     json["data"] = data(outcome);
     json["trial"] = {{"folds", trial.folds}, {"repeats", trial.repeats}, {"seed", study.trial.folds_file ? Json(nullptr) : Json(study.trial.seed)},
                      {"loss", word(study.trial.loss)}, {"mediators", word(study.trial.mediators)}, {"metric", word(study.metric)}};
+    if (study.trial.auto_repeats) json["trial"]["auto_repeats"] = true;
     if (study.trial.folds_file) json["trial"]["folds_file"] = study.trial.folds_file->text;
     json["theories"] = Json::array();
     for (const TheoryReport& report : outcome.verdict.theories) json["theories"].push_back(theory(outcome, report));
@@ -191,6 +192,7 @@ Json whole_object(const Outcome& outcome) {
         if (!losses.is_theory) json["benchmarks"].push_back({{"name", losses.name}, {"heldout", heldout(losses)}});
     json["pairs"] = Json::array();
     for (const PairReport& pair : outcome.verdict.pairs) json["pairs"].push_back(pair_of(outcome, pair));
+    json["confidence_set"] = {{"resamples", outcome.verdict.set.resamples}, {"grouped", outcome.verdict.set.grouped}};
     json["stack"] = stack(outcome);
     json["disagreement"] = disagreement(outcome);
     if (study.verdict.completeness) json["completeness"] = completeness(outcome);

@@ -20,7 +20,7 @@ std::string splits_in_words(const Outcome& outcome) {
     const std::string units = outcome.survey.clusters.empty() ? "rows" : fmt::format("whole clusters (\"{}\", {} of them)", plain(outcome.study.data.cluster->text), outcome.survey.cluster_names.size());
     const std::string from = outcome.study.trial.folds_file ? fmt::format("from {}", plain(outcome.study.trial.folds_file->text)) : fmt::format("seed {}", outcome.study.trial.seed);
     if (alone) return fmt::format("leave one {} out ({} splits), {}", outcome.survey.clusters.empty() ? "row" : "cluster", outcome.plan.folds, from);
-    return fmt::format("{} repeat{} of {} folds of {}, {}", outcome.plan.repeats, outcome.plan.repeats == 1 ? "" : "s", outcome.plan.folds, units, from);
+    return fmt::format("{} repeat{}{} of {} folds of {}, {}", outcome.plan.repeats, outcome.plan.repeats == 1 ? "" : "s", outcome.study.trial.auto_repeats ? " (auto)" : "", outcome.plan.folds, units, from);
 }
 
 std::string rows_in_words(const Survey& survey) {

@@ -46,7 +46,7 @@ results.json (schema 1)
      rows_used       rows in the contest, the same for every theory
      dropped         list of: reason (text), rows (list of row numbers)
    trial
-     folds, repeats  counts
+     folds, repeats  counts; with repeats: auto also auto_repeats: true
      seed            the number that the splits were dealt from; null where a
                      folds_file was given
      loss            "squared" or "absolute"
