@@ -8,6 +8,8 @@
 #include <algorithm>
 #include <array>
 #include <cmath>
+#include <span>
+#include <vector>
 
 namespace rivalfold {
 namespace {
@@ -278,9 +280,13 @@ void TheoryContestant::form_score(const Fit& fit, int block, const RowBlock& row
 
 void TheoryContestant::form_equation_column(const Fit&, const DesignColumn& column, std::ptrdiff_t rows, const Eigen::MatrixXd& scores,
                                             double* out) const {
-    std::array<const double*, 16> members{};
-    for (std::size_t m = 0; m < column.blocks.size(); ++m) members[m] = scores.col(column.blocks[m]).data();
-    form_term(column.kind, Members(members.data(), column.blocks.size()), rows, out);
+    std::array<const double*, 16> few{};  // no allocation for any usual term
+    std::vector<const double*> many;
+    const std::size_t count = column.blocks.size();
+    if (count > few.size()) many.resize(count);
+    const std::span<const double*> members(count > few.size() ? many.data() : few.data(), count);
+    for (std::size_t m = 0; m < count; ++m) members[m] = scores.col(column.blocks[m]).data();
+    form_term(column.kind, Members(members.data(), members.size()), rows, out);
 }
 
 void TheoryContestant::form_column(const Fit& fit, const DesignColumn& column, const RowBlock& rows, RowScratch& scratch, double* out) const {
