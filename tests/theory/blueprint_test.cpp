@@ -145,7 +145,7 @@ data: {file: refits.csv}
 constructs:
   planning: {indicators: [pln1, pln2]}
   again: {indicators: [pln2, pln3], reversed: [pln2], range: [1, 7]}
-  mixed: {indicators: [skl1, dlv1]}
+  mixed: {indicators: [skl1, pln1]}
   delivery: {indicators: ["dlv*"]}
 target: delivery
 theories:
