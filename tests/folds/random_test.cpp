@@ -112,16 +112,25 @@ TEST_CASE("bounded draws are uniform at small bounds", "[folds]") {
         }
         CHECK(chi_square(counts) < most);
     }
+    for (const auto& [bound, most] : limit) {
+        RandomStream stream(5, Purpose::bootstrap, static_cast<std::uint32_t>(bound));
+        std::vector<std::size_t> counts(bound, 0);
+        for (int k = 0; k < 60000; ++k) ++counts.at(stream.below_small(static_cast<std::uint32_t>(bound)));
+        CHECK(chi_square(counts) < most);
+    }
     RandomStream one(5, Purpose::simulation, 0);
-    for (int k = 0; k < 10; ++k) CHECK(one.below(1) == 0);
+    for (int k = 0; k < 10; ++k) CHECK((one.below(1) == 0 && one.below_small(1) == 0));
 }
 
-// Multiplying without rejecting would give a multiple of 3 half of the time: four 64-bit words share three values.
+// Multiplying without rejecting would give a multiple of 3 half of the time: four words share three values.
 TEST_CASE("bounded draws are uniform where a quarter of the words must be rejected", "[folds]") {
     RandomStream stream(5, Purpose::simulation, 1);
     std::vector<std::size_t> counts(3, 0);
     for (int k = 0; k < 30000; ++k) ++counts[stream.below(std::uint64_t{3} << 62) % 3];
     CHECK(chi_square(counts) < 18.5);
+    std::vector<std::size_t> small(3, 0);
+    for (int k = 0; k < 30000; ++k) ++small[stream.below_small(std::uint32_t{3} << 30) % 3];
+    CHECK(chi_square(small) < 18.5);
 }
 
 TEST_CASE("a shuffle is a permutation, and all 24 orders of four are equally likely", "[folds]") {

@@ -81,6 +81,7 @@ inline void check_same_bits(const Trial& a, const Trial& b) {
         for (std::size_t e = 0; e < a.whole[t].fit.equations.size(); ++e) CHECK(a.whole[t].fit.equations[e].slopes == b.whole[t].fit.equations[e].slopes);
     CHECK(a.full_model.sse == b.full_model.sse);
     CHECK(a.errors.products == b.errors.products);
+    CHECK(a.errors.squares == b.errors.squares);
     CHECK(a.errors.mean_error == b.errors.mean_error);
     CHECK(a.errors.stack.row_loss == b.errors.stack.row_loss);
     CHECK(a.errors.stack.weights == b.errors.stack.weights);

@@ -195,14 +195,21 @@ metric: response
     }
     REQUIRE(trial.errors.members == std::vector<std::size_t>{0, 1, 2});
     CHECK((trial.errors.mean_error - mean_errors.leftCols(3)).cwiseAbs().maxCoeff() < 1e-12);
-    for (std::size_t a = 0; a < 3; ++a)
-        for (std::size_t b = 0; b <= a; ++b) {
+    CHECK(trial.errors.squares.size() == 0);  // the row losses themselves
+    SmallContest absolute_contest = prepare(contest.study.source, answers.csv());
+    absolute_contest.study.trial.loss = Loss::absolute;
+    const Trial absolute_trial = run(absolute_contest);
+    for (std::size_t a = 0; a < 3; ++a) {
+        CHECK((absolute_trial.contestants[a].row_loss - absolute[a] / unit).cwiseAbs().maxCoeff() < 1e-12);
+        CHECK((absolute_trial.errors.squares.col(static_cast<Index>(a)) - squared[a] / (unit * unit)).cwiseAbs().maxCoeff() < 1e-12);
+        for (std::size_t b = 0; b < a; ++b) {
             VectorXd product = VectorXd::Zero(60);
             for (Index r = 0; r < 3; ++r)
                 product += errors.col(5 * r + static_cast<Index>(a)).cwiseProduct(errors.col(5 * r + static_cast<Index>(b))) / (3 * unit * unit);
-            const VectorXd kept = a == b ? trial.contestants[a].row_loss : VectorXd(trial.errors.products.col(ErrorProducts::column(a, b)));
-            CHECK((kept - product).cwiseAbs().maxCoeff() < 1e-12);
+            CHECK((trial.errors.products.col(ErrorProducts::column(a, b)) - product).cwiseAbs().maxCoeff() < 1e-12);
+            CHECK(ErrorProducts::column(a, b) == ErrorProducts::column(b, a));
         }
+    }
     CHECK(trial.contestants[3].name == "training mean");
     CHECK(trial.contestants[4].name == "linear benchmark");
 }
