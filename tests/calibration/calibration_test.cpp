@@ -45,6 +45,7 @@ TEST_CASE("at equal expected loss the verdict names no nested theory that the ro
     CHECK(std::fabs(result.truth.difference[0]) <= 3 * std::hypot(1, 1) * result.truth.difference_se[0]);
     const Rates rates = rates_of(result);
     CHECK(rates.wrong_winner.value <= false_winner_bound(kSamples));
+    CHECK(rates.tests_wrong.value <= false_winner_bound(kSamples));
     CHECK(rates.rows_wrong.value > false_winner_bound(kSamples));
     CHECK(rates.splits_wrong.value > false_winner_bound(kSamples));
     CHECK(rates.coverage.value >= 0.90);
@@ -54,6 +55,7 @@ TEST_CASE("at equal expected loss the verdict names no nested theory that the ro
 TEST_CASE("with clusters the declared study keeps the bound and the undeclared one breaks it", "[calibration]") {
     const Rates declared = rates_of(simulated("clusters of 10; normal; n = 200"));
     CHECK(declared.wrong_winner.value <= false_winner_bound(kSamples));
+    CHECK(declared.rows_wrong.value <= false_winner_bound(kSamples));  // the row test by cluster, alone
     CHECK(declared.coverage.value >= 0.90);
     const Rates ignored = rates_of(simulated("clusters of 10, not declared; normal; n = 200"));
     CHECK(ignored.wrong_winner.value > false_winner_bound(kSamples));

@@ -161,6 +161,7 @@ TEST_CASE("rates are shares of the fitted samples with the binomial standard err
     CHECK(rates.wrong_winner.se == Approx(std::sqrt(0.25 * 0.75 / 4)));
     CHECK(rates.right_winner.value == 0);
     CHECK(rates.rows_wrong.value == 1);
+    CHECK(rates.tests_wrong.value == 0);
     CHECK(rates.corrected_wrong.value == Approx(0.25));
     CHECK(rates.tied_called_different.value == Approx(0.25));
     CHECK(rates.coverage.value == Approx(0.75));

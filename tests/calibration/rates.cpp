@@ -47,14 +47,14 @@ std::string tuned_words(const CellResult& result) {
 
 std::string write_nulls(const std::vector<CellResult>& results, const std::vector<Rates>& rates) {
     std::string text =
-        "| equal expected loss | items | n | false winner | row test alone | corrected alone | splits as independent | tied pair called different | "
-        "called equal | coverage | Clark-West | T_R keeps all | T_max keeps all | bounds |\n|---|---|--:|--:|--:|--:|--:|--:|--:|--:|--:|--:|--:|---|\n";
+        "| equal expected loss | items | n | false winner | both tests, margin 0 | row test alone | corrected alone | splits as independent | tied pair called different | "
+        "called equal | coverage | Clark-West | T_R keeps all | T_max keeps all | bounds |\n|---|---|--:|--:|--:|--:|--:|--:|--:|--:|--:|--:|--:|--:|---|\n";
     for (std::size_t i = 0; i < results.size(); ++i) {
         const Cell& cell = results[i].cell;
         if (cell.design.aim != Aim::null) continue;
         const Rates& r = rates[i];
         const std::vector<std::string> faults = shortcomings(cell, r);
-        text += fmt::format("{} {} | {} | {} | {} | {} | {} | {} | {} | {} | {} | {} |\n", truth_columns(cell), percent(r.wrong_winner), percent(r.rows_wrong),
+        text += fmt::format("{} {} | {} | {} | {} | {} | {} | {} | {} | {} | {} | {} | {} |\n", truth_columns(cell), percent(r.wrong_winner), percent(r.tests_wrong), percent(r.rows_wrong),
                             percent(r.corrected_wrong), percent(r.splits_wrong), percent(r.tied_called_different), percent(r.called_equal),
                             percent(r.coverage), percent(r.clark_west), percent(r.range_keeps), percent(r.max_keeps),
                             !has_bounds(cell) ? "" : faults.empty() ? "kept" : fmt::format("{}", fmt::join(faults, "; ")));
@@ -64,13 +64,13 @@ std::string write_nulls(const std::vector<CellResult>& results, const std::vecto
 
 std::string write_others(const std::vector<CellResult>& results, const std::vector<Rates>& rates) {
     std::string text =
-        "| different expected loss | items | n | better theory named | wrong winner | row test alone | corrected alone | splits as independent | "
-        "called equal | coverage | Clark-West | T_R keeps best | T_max keeps best |\n|---|---|--:|--:|--:|--:|--:|--:|--:|--:|--:|--:|--:|\n";
+        "| other truths | items | n | better theory named | wrong winner | both tests, margin 0 | row test alone | corrected alone | splits as independent | "
+        "called equal | coverage | Clark-West | T_R keeps best | T_max keeps best |\n|---|---|--:|--:|--:|--:|--:|--:|--:|--:|--:|--:|--:|--:|\n";
     for (std::size_t i = 0; i < results.size(); ++i) {
         const Cell& cell = results[i].cell;
         if (cell.design.aim == Aim::null) continue;
         const Rates& r = rates[i];
-        text += fmt::format("{} {} | {} | {} | {} | {} | {} | {} | {} | {} | {} |\n", truth_columns(cell), percent(r.right_winner), percent(r.wrong_winner),
+        text += fmt::format("{} {} | {} | {} | {} | {} | {} | {} | {} | {} | {} | {} |\n", truth_columns(cell), percent(r.right_winner), percent(r.wrong_winner), percent(r.tests_right),
                             percent(r.rows_right), percent(r.corrected_right), percent(r.splits_right), percent(r.called_equal), percent(r.coverage),
                             percent(r.clark_west), percent(r.range_keeps), percent(r.max_keeps));
     }
@@ -92,16 +92,21 @@ std::string write_truths(const std::vector<CellResult>& results, const std::vect
 }
 
 std::string write_summary(const std::vector<CellResult>& results, const std::vector<Rates>& rates) {
-    std::size_t asked = 0, kept = 0;
-    std::string list;
+    std::size_t asked = 0, kept = 0, kept_by_tests = 0;
+    std::string list, list_of_tests;
     for (std::size_t i = 0; i < results.size(); ++i) {
         if (!has_bounds(results[i].cell)) continue;
         ++asked;
         const std::vector<std::string> faults = shortcomings(results[i].cell, rates[i]);
         kept += faults.empty();
+        const Rate tests = rates[i].tests_wrong;
+        const bool within = tests.value <= false_winner_bound(rates[i].samples);
+        kept_by_tests += within;
+        if (!within) list_of_tests += fmt::format("- {}: {:.1f}%\n", results[i].cell.name(), 100 * tests.value);
         if (!faults.empty()) list += fmt::format("- {}: {}\n", results[i].cell.name(), fmt::join(faults, "; "));
     }
-    return fmt::format("{} of {} cells of equal expected loss keep every bound.{}\n{}", kept, asked, list.empty() ? "" : " Those that do not:", list);
+    return fmt::format("{} of {} cells of equal expected loss keep every bound.{}\n{}\n{} of {} keep the bound on false winners with margin 0 too.{}\n{}", kept, asked,
+                       list.empty() ? "" : " Those that do not:", list, kept_by_tests, asked, list_of_tests.empty() ? "" : " Those that do not:", list_of_tests);
 }
 
 }  // namespace
@@ -120,6 +125,7 @@ Rates rates_of(const CellResult& result, double level) {
         wrong_rate = mean_over(judged, [&](const Judgement& one) { return winner_of(one) && !right(winner_of(one)); });
     };
     both([](const Judgement& one) { return one.winner; }, out.wrong_winner, out.right_winner);
+    both([&](const Judgement& one) { return one.leader(&PairJudgement::p_both, level); }, out.tests_wrong, out.tests_right);
     both([&](const Judgement& one) { return one.leader(&PairJudgement::p_rows, level); }, out.rows_wrong, out.rows_right);
     both([&](const Judgement& one) { return one.leader(&PairJudgement::p_corrected, level); }, out.corrected_wrong, out.corrected_right);
     both([&](const Judgement& one) { return one.leader(&PairJudgement::p_splits, level); }, out.splits_wrong, out.splits_right);

@@ -19,6 +19,7 @@ struct Rates {
     std::size_t samples = 0, not_fitted = 0;
     Rate wrong_winner;              ///< a winner is named that is not the one best theory; at equal loss: any winner
     Rate right_winner;              ///< the one best theory is named
+    Rate tests_wrong, tests_right;  ///< the same, had both tests decided and equality not come first (margin: 0)
     Rate rows_wrong, rows_right;    ///< the same, had the row test decided alone
     Rate corrected_wrong, corrected_right;
     Rate splits_wrong, splits_right;  ///< had the t test decided that takes splits as independent
