@@ -58,7 +58,7 @@ void run_stages(Outcome& outcome, const RunSettings& settings, bool with_contest
     outcome.verdict = reach_verdict(study, outcome.survey, *outcome.sample, outcome.trial);
     if (study.verdict.completeness)
         outcome.completeness = measure_completeness(study, outcome.survey, *outcome.sample, outcome.plan, outcome.trial, outcome.run.threads);
-    const std::vector<std::string> more = advise_on_outcome(study, outcome.survey, outcome.trial, outcome.verdict);
+    const std::vector<std::string> more = advise_on_outcome(study, outcome.survey, outcome.plan, outcome.trial, outcome.verdict);
     outcome.advice.insert(outcome.advice.end(), more.begin(), more.end());
 }
 

@@ -153,7 +153,7 @@ void save_results(const Outcome& outcome, const std::string& folder) {
         const auto write_half = [&](std::size_t half) {
             try {
                 for (const ResultFile& file : result_files())
-                    if ((std::string_view(file.name) == "folds.csv") == (half == 1)) write_file(made / file.name, outcome, file);
+                    if (!(file.by_segment && outcome.segments.empty()) && (std::string_view(file.name) == "folds.csv") == (half == 1)) write_file(made / file.name, outcome, file);
             } catch (...) {
                 failures[half] = std::current_exception();
             }

@@ -2,6 +2,7 @@
 #include "report/numbers.hpp"
 
 #include <charconv>
+#include <numeric>
 
 namespace rivalfold {
 namespace {
@@ -30,6 +31,41 @@ void append(std::string& line, double value) {
 void append(std::string& line, std::size_t value) {
     char text[24];
     line.append(text, std::to_chars(text, text + sizeof text, value).ptr);
+}
+
+void put_losses(const Outcome& outcome, const std::vector<std::size_t>& contestants, const std::string& lead, const Sink& sink) {
+    std::string text;
+    for (std::size_t i = 0; i < outcome.survey.n(); ++i) {
+        text += lead;
+        append(text, outcome.survey.rows[i]);
+        for (const std::size_t c : contestants) {
+            text += ',';
+            if (!outcome.trial.contestants[c].failed) append(text, outcome.trial.contestants[c].row_loss(static_cast<Eigen::Index>(i)));
+        }
+        text += '\n';
+        if (text.size() < 60000) continue;
+        sink(text);
+        text.clear();
+    }
+    sink(text);
+}
+
+void put_folds(const Outcome& outcome, const std::string& lead, const Sink& sink) {
+    std::string text;
+    for (int r = 0; r < outcome.plan.repeats; ++r)
+        for (std::size_t i = 0; i < outcome.plan.n_rows; ++i) {
+            text += lead;
+            append(text, outcome.survey.rows[i]);
+            text += ',';
+            append(text, static_cast<std::size_t>(r) + 1);
+            text += ',';
+            append(text, static_cast<std::size_t>(outcome.plan.fold(r, i)) + 1);
+            text += '\n';
+            if (text.size() < 60000) continue;
+            sink(text);
+            text.clear();
+        }
+    sink(text);
 }
 
 }  // namespace
@@ -92,36 +128,28 @@ void write_indicators_csv(const Outcome& outcome, const Sink& sink) {
 void write_losses_csv(const Outcome& outcome, const Sink& sink) {
     std::string text = "row";
     for (const std::size_t c : outcome.verdict.order) text += "," + csv_field(outcome.trial.contestants[c].name);
-    text += "\n";
-    for (std::size_t i = 0; i < outcome.survey.n(); ++i) {
-        append(text, outcome.survey.rows[i]);
-        for (const std::size_t c : outcome.verdict.order) {
-            text += ',';
-            append(text, outcome.trial.contestants[c].row_loss(static_cast<Eigen::Index>(i)));
-        }
-        text += '\n';
-        if (text.size() < 60000) continue;
-        sink(text);
-        text.clear();
-    }
-    sink(text);
+    sink(text + "\n");
+    put_losses(outcome, outcome.verdict.order, "", sink);
+}
+
+void write_segment_losses_csv(const Outcome& outcome, const Sink& sink) {
+    // One set of columns for all segments: contestants in the study's order; a theory that failed in a segment has empty cells there.
+    std::vector<std::size_t> all(outcome.trial.contestants.size());
+    std::iota(all.begin(), all.end(), std::size_t{0});
+    std::string text = "segment,row";
+    for (const std::size_t c : all) text += "," + csv_field(outcome.trial.contestants[c].name);
+    sink(text + "\n");
+    for (const Outcome& segment : outcome.segments) put_losses(segment, all, csv_field(segment.segment_name) + ",", sink);
 }
 
 void write_folds_csv(const Outcome& outcome, const Sink& sink) {
-    std::string text = "row,repeat,fold\n";
-    for (int r = 0; r < outcome.plan.repeats; ++r)
-        for (std::size_t i = 0; i < outcome.plan.n_rows; ++i) {
-            append(text, outcome.survey.rows[i]);
-            text += ',';
-            append(text, static_cast<std::size_t>(r) + 1);
-            text += ',';
-            append(text, static_cast<std::size_t>(outcome.plan.fold(r, i)) + 1);
-            text += '\n';
-            if (text.size() < 60000) continue;
-            sink(text);
-            text.clear();
-        }
-    sink(text);
+    sink("row,repeat,fold\n");
+    put_folds(outcome, "", sink);
+}
+
+void write_segment_folds_csv(const Outcome& outcome, const Sink& sink) {
+    sink("segment,row,repeat,fold\n");
+    for (const Outcome& segment : outcome.segments) put_folds(segment, csv_field(segment.segment_name) + ",", sink);
 }
 
 void write_disagreements_csv(const Outcome& outcome, const Sink& sink) {
@@ -159,7 +187,8 @@ void write_study_yaml(const Outcome& outcome, const Sink& sink) { sink(outcome.s
 const std::vector<ResultFile>& result_files() {
     static const std::vector<ResultFile> files = {
         {"results.json", write_results_json}, {"ranking.csv", write_ranking_csv}, {"pairs.csv", write_pairs_csv},
-        {"indicators.csv", write_indicators_csv}, {"losses.csv", write_losses_csv}, {"folds.csv", write_folds_csv}, {"disagreements.csv", write_disagreements_csv},
+        {"indicators.csv", write_indicators_csv}, {"losses.csv", write_losses_csv}, {"folds.csv", write_folds_csv}, {"segment_losses.csv", write_segment_losses_csv, true},
+        {"segment_folds.csv", write_segment_folds_csv, true}, {"disagreements.csv", write_disagreements_csv},
         {"table.md", write_table_md}, {"study.yaml", write_study_yaml}, {"manifest.json", write_manifest_json}};
     return files;
 }

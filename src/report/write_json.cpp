@@ -80,8 +80,12 @@ Json paired_test(const PairedTest& test, double loss_b) {
 Json data(const Outcome& outcome) {
     Json dropped = Json::array();
     for (const Dropped& drop : outcome.survey.dropped) dropped.push_back({{"reason", drop.reason}, {"rows", drop.rows}});
-    return {{"file", outcome.study.data.file.text}, {"sha256", outcome.survey.sha256}, {"rows_read", outcome.survey.rows_read},
-            {"rows_used", outcome.survey.n()}, {"dropped", std::move(dropped)}};
+    Json out = {{"file", outcome.study.data.file.text}, {"sha256", outcome.survey.sha256}, {"rows_read", outcome.survey.rows_read},
+                {"rows_used", outcome.survey.n()}, {"dropped", std::move(dropped)}};
+    for (std::size_t g = 0; g < outcome.sample->gappy.size(); ++g)
+        out["filled"].push_back({{"name", outcome.survey.variables[static_cast<std::size_t>(outcome.sample->gappy[g])].column},
+                                 {"cells", static_cast<std::size_t>(outcome.sample->gaps.col(static_cast<Eigen::Index>(g)).sum())}});
+    return out;
 }
 
 Json theory(const Outcome& outcome, const TheoryReport& report) {
@@ -203,6 +207,7 @@ Json whole_object(const Outcome& outcome) {
         for (const Outcome& segment : outcome.segments) json["segments"].push_back(whole_object(segment));
         json["reversals"] = reversals(outcome);
     }
+    json["methods"] = methods_text(outcome);
     json["advice"] = outcome.advice;
     if (outcome.segment_name.empty()) json["caution"] = caution();
     return json;

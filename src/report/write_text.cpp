@@ -37,14 +37,20 @@ std::string failures(const Outcome& outcome, const TerminalStyle& style) {
 
 std::string ranked_table(const Outcome& outcome, const TerminalStyle& style) {
     TextTable table({{"rank", false}, {"theory", true}, {"loss", false}, {"rmse", false}, {"mae", false}, {"q2", false}, {"fit", false}, {"dBIC", false}, {"p set", false}});
+    bool flexible_due = outcome.completeness.computed;
+    const auto add_flexible = [&] {
+        const std::string name = outcome.completeness.subsample ? fmt::format("* flexible benchmark, {} rows", outcome.completeness.rows) : "* flexible benchmark";
+        if (flexible_due) table.add({"", name, fixed(outcome.completeness.loss_flexible, 4), "", "", fixed(outcome.completeness.q2_flexible, 3), "", "", ""});
+        flexible_due = false;
+    };
     for (const std::size_t c : outcome.verdict.order) {
         const ContestantLosses& losses = outcome.trial.contestants[c];
         const TheoryReport* theory = losses.is_theory ? &outcome.verdict.theories[c] : nullptr;
-        table.add({theory ? std::to_string(theory->rank) : "", (theory ? "" : "~ ") + plain(losses.name), fixed(losses.loss, 4), fixed(losses.rmse, 4), fixed(losses.mae, 4),
+        if (losses.loss > outcome.completeness.loss_flexible) add_flexible();
+        table.add({theory ? std::to_string(theory->rank) : "", (theory ? "" : "* ") + plain(losses.name), fixed(losses.loss, 4), fixed(losses.rmse, 4), fixed(losses.mae, 4),
                    fixed(losses.q2, 3), theory ? fixed(theory->explained, 3) : "", theory ? fixed(theory->bic_difference, 1) : "", theory ? p_text(theory->p_set_max) : ""});
     }
-    if (outcome.completeness.computed)
-        table.add({"", "~ flexible benchmark", fixed(outcome.completeness.loss_flexible, 4), "", "", fixed(outcome.completeness.q2_flexible, 3), "", "", ""});
+    add_flexible();
     for (const TheoryReport& theory : outcome.verdict.theories)
         if (outcome.trial.contestants[theory.contestant].failed)
             table.add({"-", plain(outcome.trial.contestants[theory.contestant].name), "failed", "-", "-", "-", "-", fixed(theory.bic_difference, 1), "-"});
@@ -82,8 +88,9 @@ std::string ranked_reading(const Outcome& outcome) {
         "Loss: mean {} error of held-out rows, each target indicator in units of its own standard deviation; smaller is better. rmse, mae: the same errors in those units. "
         "q2: share of the training mean's squared error that is avoided; 1 is perfect, 0 or less no better than the mean. fit: the same share for the rows that were fitted; dBIC: "
         "BIC above the smallest; both describe the sample, not new rows. p set: p in the model confidence set; above {:g} it may be the best. "
-        "~ marks a benchmark: beating the training mean shows that there is something to predict; a theory behind the linear benchmark wastes what the indicators hold.",
+        "* marks a benchmark: beating the training mean shows that there is something to predict; a theory behind the linear benchmark wastes what the indicators hold.",
         squared ? "squared" : "absolute", outcome.study.verdict.level);
+    if (outcome.study.trial.mediators == Mediators::predicted) text += " loss, q2 and fit use predicted mediators; BIC measured ones.";
     if (outcome.verdict.several_targets)
         text += " The theories weight the target's indicators differently, so their BIC describes slightly different target scores; held-out losses do not suffer from that.";
     return text;
@@ -161,13 +168,26 @@ std::string segments_table(const Outcome& outcome, const TerminalStyle& style) {
     }
     std::string out = table.render(static_cast<std::size_t>(style.width)) + "\n" + paragraph("rank: loss (q2) within each segment, fitted and judged there alone.", style);
     for (const Outcome& segment : outcome.segments) out += wrap(fmt::format("{}: {}", plain(segment.segment_name), plain(segment.verdict.headline)), static_cast<std::size_t>(style.width), 2) + "\n";
-    for (const Reversal& reversal : outcome.reversals)
+    double smallest = 1;
+    bool found = false;
+    for (const Reversal& reversal : outcome.reversals) {
         if (!reversal.words.empty()) out += wrap(plain(reversal.words), static_cast<std::size_t>(style.width), 2) + "\n";
+        found = found || !reversal.words.empty();
+        if (std::isfinite(reversal.p_holm)) smallest = std::min(smallest, reversal.p_holm);
+    }
+    if (!found) out += paragraph(fmt::format("No pair's loss difference differs between segments (smallest Holm-adjusted p {}); that is no proof of sameness.", p_text(smallest)), style);
     return out;
 }
 
 std::string verdict_in_words(const Outcome& outcome, const TerminalStyle& style) {
     std::string out = paragraph(plain(outcome.verdict.headline), style);
+    for (const PairReport& pair : outcome.verdict.pairs) {
+        if (!pair.theories || !std::isfinite(pair.monte_carlo_se) || !(pair.rows.se > 0)) continue;
+        const double loss = outcome.trial.contestants[pair.b].loss;
+        out += paragraph(fmt::format("Other splits of the same rows would move the difference between the first two by about {:.2f}% of the loss (one standard error of the splits); "
+                                     "other rows by about {:.2f}%.", 100 * pair.monte_carlo_se / loss, 100 * std::max(pair.rows.se, pair.corrected.se) / loss), style);
+        break;  // pairs stand in table order: the first pair of theories is that of the two best
+    }
     for (const PairReport& pair : outcome.verdict.pairs)
         if (!pair.nested_words.empty()) out += paragraph(plain(pair.nested_words), style);
     for (const std::string& words : outcome.verdict.encompassing_words) out += paragraph(plain(words), style);
@@ -269,8 +289,8 @@ void write_table_md(const Outcome& outcome, const Sink& sink) {
     for (const std::size_t c : outcome.verdict.order) line(c);
     for (std::size_t c = 0; c < outcome.trial.contestants.size(); ++c)
         if (outcome.trial.contestants[c].failed) line(c);
-    sink(fmt::format("\n*Note.* {} rows used; {}. {} R²: share of the target score's variance in the fitted sample.\n\n{} {}\n", outcome.survey.n(), markdown_cell(splits_in_words(outcome)),
-                     markdown_cell(ranked_reading(outcome)), markdown_cell(outcome.verdict.headline), caution()));
+    sink(fmt::format("\n*Note.* {} rows used; {}. {} R²: share of the target score's variance in the fitted sample.\n\n{}\n\n{}\n\n{}\n", outcome.survey.n(),
+                     markdown_cell(splits_in_words(outcome)), markdown_cell(ranked_reading(outcome)), markdown_cell(outcome.verdict.headline), markdown_cell(methods_text(outcome)), caution()));
 }
 
 }  // namespace rivalfold

@@ -11,6 +11,8 @@
 namespace rivalfold {
 namespace {
 
+constexpr std::size_t kMostColumns = 500;
+
 /// Text that two constructs share exactly if they are measured alike: the same variables, weighted alike.
 std::string measurement_key(const Measurement& measurement) {
     std::vector<int> variables = measurement.variables;
@@ -93,6 +95,11 @@ private:
 
     /// One column per combination of the members' blocks, the last member's level running fastest.
     void add_columns(const Term& term, int number, EquationPlan& equation) {
+        std::size_t count = 1;
+        for (const Name& member : term.members) count *= blocks_of(member.text).size();  // at most 50^8, far below overflow
+        if (count > kMostColumns)
+            throw FaultError(study_.fault_at(term.place, fmt::format("{} makes {} columns, one for each combination of levels; at most {} are possible",
+                                                                     describe(term), count, kMostColumns), "merge levels, or leave out a category"));
         std::vector<std::vector<int>> combinations(1);
         for (const Name& member : term.members) {
             std::vector<std::vector<int>> longer;

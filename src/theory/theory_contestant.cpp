@@ -278,7 +278,7 @@ void TheoryContestant::form_score(const Fit& fit, int block, const RowBlock& row
     add_columns(rows, columns, fit.gap_means, [&](std::size_t h) { return score.coefficients(static_cast<Eigen::Index>(h)); }, out);
 }
 
-void TheoryContestant::form_equation_column(const Fit&, const DesignColumn& column, std::ptrdiff_t rows, const Eigen::MatrixXd& scores,
+void TheoryContestant::form_equation_column(const DesignColumn& column, std::ptrdiff_t rows, const Eigen::MatrixXd& scores,
                                             double* out) const {
     std::array<const double*, 16> few{};  // no allocation for any usual term
     std::vector<const double*> many;
@@ -292,7 +292,7 @@ void TheoryContestant::form_equation_column(const Fit&, const DesignColumn& colu
 void TheoryContestant::form_column(const Fit& fit, const DesignColumn& column, const RowBlock& rows, RowScratch& scratch, double* out) const {
     make_room(scratch.scores, rows.rows, static_cast<Eigen::Index>(plan_.blocks.size()));
     for (const int block : column.blocks) form_score(fit, block, rows, scratch.scores.col(block).data());
-    form_equation_column(fit, column, rows.rows, scratch.scores, out);
+    form_equation_column(column, rows.rows, scratch.scores, out);
 }
 
 void TheoryContestant::form_design(int design, const Fit& fit, const RowBlock& rows, RowScratch& scratch, double* out, std::ptrdiff_t stride) const {
@@ -304,7 +304,7 @@ void TheoryContestant::form_design(int design, const Fit& fit, const RowBlock& r
     for (std::ptrdiff_t c = 0; c <= n_columns; ++c) {
         double* column = out + c * stride;
         if (c < n_columns)
-            form_equation_column(fit, equation.columns[static_cast<std::size_t>(c)], rows.rows, scratch.scores, column);
+            form_equation_column(equation.columns[static_cast<std::size_t>(c)], rows.rows, scratch.scores, column);
         else
             form_score(fit, equation.outcome, rows, column);
         if (shift(c) != 0)
@@ -335,7 +335,7 @@ void TheoryContestant::predict(const Fit& fit, const RowBlock& rows, RowScratch&
             for (std::size_t c = 0; c < equation.columns.size(); ++c) {
                 const double slope = fit.equations[e].slopes(static_cast<Eigen::Index>(c));
                 if (slope == 0) continue;
-                form_equation_column(fit, equation.columns[c], n, scratch.scores, term);
+                form_equation_column(equation.columns[c], n, scratch.scores, term);
                 add_scaled(sum, term, n, slope);
             }
             if (is_target) break;

@@ -16,6 +16,7 @@ namespace {
 constexpr double kNaN = std::numeric_limits<double>::quiet_NaN();
 constexpr int kMostAutoRepeats = 200;
 constexpr int kAutoStep = 10;
+constexpr Eigen::Index kWaveBytes = Eigen::Index{1} << 26;
 
 /// Everything that one run needs, in the order in which it is made.
 class Contest {
@@ -36,6 +37,7 @@ private:
     void take_splits(const std::vector<FoldRange>& ranges, const std::vector<std::vector<SplitFits>>& fits, const std::vector<std::vector<SplitErrors>>& errors);
     void throw_constant(int column, int repeat, std::size_t fold) const;
     bool needs_more_repeats(int repeats) const;
+    Eigen::Index bytes_per_split() const;
     void finish_results();
 
     const Study& study_;
@@ -90,7 +92,7 @@ void Contest::throw_constant(int column, int repeat, std::size_t fold) const {
     fault.file = study_.data.file.text;
     fault.position = fmt::format("column \"{}\"", survey_.variables[static_cast<std::size_t>(column)].column);
     fault.message = fmt::format("has one and the same value in all training rows of repeat {}, fold {}; it cannot be standardised there", repeat + 1, fold + 1);
-    fault.hint = "drop the indicator, or use fewer folds";
+    fault.hint = "drop the indicator, or use more folds, so that each trains on more rows";
     throw FaultError(std::move(fault));
 }
 
@@ -117,9 +119,21 @@ void Contest::run_splits(FoldPlan& plan, const std::function<void(double)>& prog
     row_loss_.resize(0, 0);
 }
 
+// Roughly what one split's Gram matrices and fits take: a wide design must not multiply with the number of repeats.
+Eigen::Index Contest::bytes_per_split() const {
+    Eigen::Index numbers = 2 * static_cast<Eigen::Index>(gram_size(sample_)) * gram_size(sample_);
+    for (const auto& theory : trial_.theories)
+        for (const EquationPlan& equation : theory->blueprint().equations) {
+            const auto width = static_cast<Eigen::Index>(equation.columns.size()) + 2;
+            numbers += 3 * width * width;
+        }
+    return 8 * numbers;
+}
+
 void Contest::run_repeats(const FoldPlan& plan, int first, int last, const std::function<void(double)>& progress) {
     // A wave holds as many repeats as keep its buffers small.
-    const int wave = static_cast<int>(std::max<Eigen::Index>(1, std::min<Eigen::Index>(200000 / sample_.n, 1024 / std::min(plan.folds, 1024))));
+    const Eigen::Index splits = std::max<Eigen::Index>(1, kWaveBytes / bytes_per_split());
+    const int wave = static_cast<int>(std::max<Eigen::Index>(1, std::min<Eigen::Index>(200000 / sample_.n, splits / std::min(plan.folds, 1024))));
     for (int r = first; r < last; r += wave) {
         run_wave(plan, r, std::min(last, r + wave));
         if (progress) progress(static_cast<double>(std::min(last, r + wave)) / plan.repeats);
@@ -194,14 +208,15 @@ void Contest::take_splits(const std::vector<FoldRange>& ranges, const std::vecto
 }
 
 bool Contest::needs_more_repeats(int repeats) const {
+    const double scale = repeat_loss_[trial_.theories.size()].front();  // the training mean's
     for (std::size_t a = 0; a < trial_.theories.size(); ++a)
         for (std::size_t b = a + 1; b < trial_.theories.size(); ++b) {
             if (trial_.contestants[a].failed || trial_.contestants[b].failed) continue;
             const auto col_a = row_loss_.col(static_cast<Eigen::Index>(a)), col_b = row_loss_.col(static_cast<Eigen::Index>(b));
-            const Eigen::VectorXd d = without_rounding((col_a - col_b) / static_cast<double>(repeats), col_a.maxCoeff() / static_cast<double>(repeats));
+            const Eigen::VectorXd d = without_rounding((col_a - col_b) / static_cast<double>(repeats), scale);
             Eigen::VectorXd by_repeat(repeats);
             for (int r = 0; r < repeats; ++r) by_repeat(r) = repeat_loss_[a][static_cast<std::size_t>(r)] - repeat_loss_[b][static_cast<std::size_t>(r)];
-            by_repeat = without_rounding(std::move(by_repeat), repeat_loss_[a].front());
+            by_repeat = without_rounding(std::move(by_repeat), scale);
             if (standard_error(by_repeat, {}, 0) > 0.1 * standard_error(d, survey_.clusters, survey_.cluster_names.size())) return true;
         }
     return false;

@@ -64,19 +64,23 @@ void advise_extremes(const Study& study, const Survey& survey, const Sample& sam
             for (const Term& term : equation.terms) {
                 if (term.kind != TermKind::minimum && term.kind != TermKind::maximum) continue;
                 std::string ranges;
-                bool unlike = false;
+                bool unlike = false, undeclared = false;
                 const Scale first = scale_of(study, survey, sample, t, term.members.front().text);
                 for (const Name& member : term.members) {
                     const Scale scale = scale_of(study, survey, sample, t, member.text);
-                    unlike = unlike || std::fabs(scale.low - first.low) + std::fabs(scale.high - first.high) > 1e-9 * (std::fabs(first.low) + std::fabs(first.high));
+                    // Undeclared scales are known by the answers seen, where an end may by chance be missing.
+                    const double slack = scale.declared && first.declared ? 1e-9 : 0.25;
+                    const double width = std::max(scale.high - scale.low, first.high - first.low);
+                    undeclared = undeclared || !scale.declared;
+                    unlike = unlike || std::max(std::fabs(scale.low - first.low), std::fabs(scale.high - first.high)) > slack * width;
                     ranges += fmt::format("{}{} {:g} to {:g}", ranges.empty() ? "" : ", ", member.text, scale.low, scale.high);
                 }
                 if (!unlike) continue;
-                advice.push_back(fmt::format("Theory \"{}\": {} compares scores on unlike scales ({}){}. Bring the members to one scale before reading it as the {} of them.",
+                advice.push_back(fmt::format("Theory \"{}\": {} compares scores on unlike scales ({}){}. Bring the members to one scale before reading it as the {} of them{}.",
                                              study.theories[t].name.text, describe(term), ranges,
                                              study.metric == Metric::standard ? "; under metric: standard it compares standings within this sample, not amounts"
                                                                               : "; the smaller unit decides which one it picks",
-                                             term.kind == TermKind::minimum ? "scarcest" : "strongest"));
+                                             term.kind == TermKind::minimum ? "scarcest" : "strongest", undeclared ? ", or declare their range if it is the same" : ""));
             }
 }
 
@@ -129,10 +133,55 @@ void advise_size(const Survey& survey, const FoldPlan& plan, const Trial& trial,
                                          theory->name(), training, coefficients));
     }
     if (trial.benchmark_predictors.size() >= training)
-        advice.push_back(fmt::format("The linear benchmark has {} predictors but a fold trains on only {} rows: it fits its training rows exactly and predicts poorly. Judge the theories by the training mean instead.",
+        advice.push_back(fmt::format("The linear benchmark has {} predictors but a fold trains on only {} rows: it fits its training rows exactly, and how well it then predicts is chance. Judge the theories by the training mean.",
                                      trial.benchmark_predictors.size(), training));
+    if (survey.n() < 30)
+        advice.push_back(fmt::format("Only {} rows: with fewer than about 30 no test or interval here can be trusted (common practice). Collect more before claiming anything.", survey.n()));
     if (!survey.clusters.empty() && survey.cluster_names.size() < 10)
         advice.push_back(fmt::format("Only {} clusters: tests by cluster need about 10 or more to be trusted. Read the intervals as rough.", survey.cluster_names.size()));
+}
+
+/// Terms that the others determine, by name where all rows show them.
+std::string dependent_terms(const Trial& trial, std::size_t theory) {
+    const Blueprint& plan = trial.theories[theory]->blueprint();
+    std::vector<std::string> names;
+    if (!trial.whole[theory].failed)
+        for (std::size_t e = 0; e < plan.equations.size(); ++e) {
+            const EquationFit& fitted = trial.whole[theory].fit.equations[e];
+            for (const Eigen::Index position : fitted.solution.dependent())
+                names.push_back(plan.equations[e].columns[static_cast<std::size_t>(fitted.active[static_cast<std::size_t>(position)])].label);
+        }
+    if (names.empty()) return "Some levels or answers are too rare for the folds: merge levels, or use more folds";
+    return fmt::format("The other terms determine {}: leave {} out", quoted_list(names), names.size() > 1 ? "them" : "it");
+}
+
+/// Products of raw scores whose origin lies far off lose their digits to it.
+void advise_origin(const Trial& trial, Advice& advice) {
+    constexpr double kFar = 1e4;
+    std::set<std::string> said;
+    for (std::size_t t = 0; t < trial.theories.size(); ++t) {
+        const Blueprint& plan = trial.theories[t]->blueprint();
+        if (plan.metric != Metric::response || trial.whole[t].failed) continue;
+        for (const EquationPlan& equation : plan.equations)
+            for (const DesignColumn& column : equation.columns)
+                for (const int block : column.blocks) {
+                    const ScoreMap& score = trial.whole[t].fit.scores[static_cast<std::size_t>(block)];
+                    const std::string& name = plan.blocks[static_cast<std::size_t>(block)].construct;
+                    if (column.kind == TermKind::score || std::fabs(score.mean) < kFar * score.sd || !said.insert(name).second) continue;
+                    advice.push_back(fmt::format("Construct \"{}\": its mean is {:.0e} times its spread, so products of it under metric: response lose their digits. Subtract a constant from its columns, or use metric: standard.",
+                                                 name, std::fabs(score.mean) / score.sd));
+                }
+    }
+}
+
+/// Cells that rows: mean will fill.
+void advise_filled(const Survey& survey, const Sample& sample, Advice& advice) {
+    for (std::size_t g = 0; g < sample.gappy.size(); ++g) {
+        const double share = sample.gaps.col(static_cast<Eigen::Index>(g)).mean();
+        if (share >= 0.05)
+            advice.push_back(fmt::format("Column \"{}\": {:.0f}% of its cells are missing and are filled with the training mean, which weakens what it can show. Compare with rows: drop.",
+                                         survey.variables[static_cast<std::size_t>(sample.gappy[g])].column, 100 * share));
+    }
 }
 
 void advise_twins(const Trial& trial, Advice& advice) {
@@ -159,27 +208,32 @@ std::vector<std::string> advise_on_study(const Study& study, const Survey& surve
     advise_constant(survey, sample, advice);
     advise_size(survey, plan, trial, advice);
     advise_twins(trial, advice);
+    advise_origin(trial, advice);
+    advise_filled(survey, sample, advice);
     for (std::size_t t = 0; t < trial.whole.size(); ++t)
         if (trial.whole[t].failed) advice.push_back(fmt::format("Theory \"{}\" cannot be fitted to all rows used: {}.", trial.theories[t]->name(), trial.whole[t].reason));
     return advice;
 }
 
-std::vector<std::string> advise_on_outcome(const Study&, const Survey&, const Trial& trial, const Verdict& verdict) {
+std::vector<std::string> advise_on_outcome(const Study& study, const Survey&, const FoldPlan& plan, const Trial& trial, const Verdict& verdict) {
     Advice advice;
+    const std::size_t training = plan.smallest_training();
     const std::size_t mean = trial.theories.size(), linear = mean + 1;
     const int splits = trial.repeats * trial.folds;
+    if (study.trial.auto_repeats && plan.repeats >= 200)
+        advice.push_back("repeats: auto stopped at 200 before the splits' own error was a tenth of the sampling error for every pair; read monte_carlo_se in pairs.csv beside the standard errors.");
     for (const std::size_t c : verdict.order) {
         const ContestantLosses& losses = trial.contestants[c];
         if (losses.is_theory) {
             if (losses.loss >= trial.contestants[mean].loss)
                 advice.push_back(fmt::format("Theory \"{}\" predicts no better than the mean (q2 {:.3f}): knowing its antecedents does not help to predict new rows.", losses.name, losses.q2));
-            else if (losses.loss > trial.contestants[linear].loss)
+            else if (losses.loss > trial.contestants[linear].loss + 1e-9 * trial.loss_scale() && trial.benchmark_predictors.size() < training)
                 advice.push_back(fmt::format("Theory \"{}\" predicts no better than the plain linear benchmark (loss {:.4f} against {:.4f}): its structure and weighting lose information that the indicators hold.",
                                              losses.name, losses.loss, trial.contestants[linear].loss));
         }
-        if (losses.rank_deficient_splits > 0)
-            advice.push_back(fmt::format("\"{}\": the terms are linearly dependent in {} of {} splits; the smallest-norm solution was used. Remove a term that the others determine.",
-                                         losses.name, losses.rank_deficient_splits, splits));
+        if (losses.rank_deficient_splits > 0 && losses.is_theory)
+            advice.push_back(fmt::format("Theory \"{}\": the terms are linearly dependent in {} of {} splits; the smallest-norm solution was used. {}.", losses.name,
+                                         losses.rank_deficient_splits, splits, dependent_terms(trial, c)));
         if (losses.unseen_level_splits > 0)
             advice.push_back(fmt::format("\"{}\": some category level had no training row in {} of {} splits; its held-out rows were predicted as if at the first level. Merge rare levels.",
                                          losses.name, losses.unseen_level_splits, splits));

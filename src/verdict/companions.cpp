@@ -64,7 +64,7 @@ void add_companions(const Study& study, const Survey& survey, const Trial& trial
     const auto own_minus_shared = [&](std::size_t own) -> Eigen::VectorXd {
         const auto shared = trial.errors.products.col(ErrorProducts::column(a, b));
         const Eigen::VectorXd squares = trial.errors.squares.size() == 0 ? trial.contestants[members[own]].row_loss : Eigen::VectorXd(trial.errors.squares.col(static_cast<Eigen::Index>(own)));
-        return without_rounding(squares - shared, squares.maxCoeff());
+        return without_rounding(squares - shared, trial.loss_scale());
     };
     pair.b_knows_more = mean_above_zero(own_minus_shared(a), survey, false);
     pair.a_knows_more = mean_above_zero(own_minus_shared(b), survey, false);
@@ -83,10 +83,15 @@ void add_companions(const Study& study, const Survey& survey, const Trial& trial
     const bool real = pair.extra_terms.p < study.verdict.level;
     const bool better = pair.outcome == (first_is_inner ? PairOutcome::second_better : PairOutcome::first_better);
     const std::string finding = fmt::format("\"{}\" is \"{}\" with extra terms. ", outer, first_is_inner ? first.name : second.name);
-    if (std::isnan(pair.extra_terms.p))
+    const std::size_t units = survey.clusters.empty() ? survey.n() : survey.cluster_names.size();
+    if (!std::isnan(pair.extra_terms.p) && units < (survey.clusters.empty() ? 30U : 10U))
+        pair.nested_words = finding + fmt::format("With {} {} the Clark-West test cannot be relied on.", units, survey.clusters.empty() ? "rows" : "clusters");
+    else if (std::isnan(pair.extra_terms.p))
         pair.nested_words = finding + "Both make the same predictions.";
     else if (real && better)
         pair.nested_words = finding + fmt::format("They carry information (Clark-West {}), enough to predict better with {} rows.", p_words(pair.extra_terms.p), survey.n());
+    else if (real && pair.outcome == PairOutcome::practically_equal)
+        pair.nested_words = finding + fmt::format("They carry information (Clark-West {}), but change the loss by less than the margin.", p_words(pair.extra_terms.p));
     else if (real)
         pair.nested_words = finding + fmt::format("They carry information (Clark-West {}), but too little to show better prediction with {} rows.", p_words(pair.extra_terms.p), survey.n());
     else
@@ -102,17 +107,19 @@ StackReport judge_stack(const Study& study, const Survey& survey, const Trial& t
     out.loss = stack.loss;
     out.weights.assign(trial.theories.size(), 0);
     for (std::size_t k = 0; k < trial.errors.members.size(); ++k) out.weights[trial.errors.members[k]] = stack.weights(static_cast<Eigen::Index>(k));
-    const Eigen::VectorXd d = without_rounding(stack.row_loss - leader.row_loss, leader.row_loss.maxCoeff());
+    const Eigen::VectorXd d = without_rounding(stack.row_loss - leader.row_loss, trial.loss_scale());
     out.difference = d.mean();
     out.relative = out.difference / leader.loss;
     const double level = study.verdict.level;
     out.rows = survey.clusters.empty() ? row_test(d, level) : cluster_test(d, survey.clusters, survey.cluster_names.size(), level);
-    out.corrected = corrected_test(without_rounding(stack.split_loss - leader.split_loss, leader.split_loss.maxCoeff()), trial.folds, out.difference, level);
+    out.corrected = corrected_test(without_rounding(stack.split_loss - leader.split_loss, trial.loss_scale()), trial.folds, out.difference, level);
     out.p = std::isnan(out.rows.p) || std::isnan(out.corrected.p) ? kNaN : std::max(out.rows.p, out.corrected.p);
     out.low = std::min(out.rows.low, out.corrected.low);
     out.high = std::max(out.rows.high, out.corrected.high);
     out.complementary = out.p < level && out.relative < -study.verdict.margin;
-    const std::string size = fmt::format("{:+.1f}% (interval {:+.1f} to {:+.1f}%)", 100 * out.relative, 100 * out.low / leader.loss, 100 * out.high / leader.loss);
+    const auto percent = [](double share) { return std::fabs(share) < 0.0005 ? std::string("0.0") : fmt::format("{:+.1f}", 100 * share); };
+    const std::string size = fmt::format("{}% ({:.4g}% interval {} to {}%{})", percent(out.relative), 100 * (1 - level), percent(out.low / leader.loss),
+                                         percent(out.high / leader.loss), study.trial.loss == Loss::absolute ? "; weights from squared errors" : "");
     if (out.complementary)
         out.words = fmt::format("The theories are complementary: their stacked mixture changes the loss of \"{}\" by {}. Each holds something that the others lack.", leader.name, size);
     else

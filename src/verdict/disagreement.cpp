@@ -69,10 +69,11 @@ Disagreement find_disagreement(const Study& study, const Survey& survey, const S
     const auto& members = trial.errors.members;
     const auto a = std::find(members.begin(), members.end(), first), b = std::find(members.begin(), members.end(), second);
     if (a == members.end() || b == members.end()) return out;
+    const Eigen::VectorXd d = without_rounding(trial.contestants[first].row_loss - trial.contestants[second].row_loss, trial.loss_scale());
+    if (d.isZero(0)) return out;  // the same predictions: they part nowhere
     out.present = true;
     out.first = first;
     out.second = second;
-    const Eigen::VectorXd d = trial.contestants[first].row_loss - trial.contestants[second].row_loss;
     std::vector<std::size_t> order(static_cast<std::size_t>(d.size()));
     std::iota(order.begin(), order.end(), std::size_t{0});
     const auto larger = [&](std::size_t i, std::size_t k) {

@@ -90,7 +90,8 @@ std::vector<ConstructWeights> report_weights(const Survey& survey, const Bluepri
 
 Criteria criteria_of(double sse, double n, double p, double mse_full) {
     Criteria out;
-    if (!(sse > 0)) {
+    // Below this the sum is rounding: target scores have a total sum of squares of n - 1.
+    if (!(sse > 1e-13 * n)) {
         out.aic = out.aicc = out.bic = out.hq = out.gm = out.bic_weight = kNaN;
         out.reason = "the equation fits every row exactly, so ln(SSE) does not exist";
         return out;

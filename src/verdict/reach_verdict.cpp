@@ -21,8 +21,10 @@ constexpr double kNaN = std::numeric_limits<double>::quiet_NaN();
 void rank_contestants(const Trial& trial, Verdict& verdict) {
     for (std::size_t c = 0; c < trial.contestants.size(); ++c)
         if (!trial.contestants[c].failed) verdict.order.push_back(c);
-    std::stable_sort(verdict.order.begin(), verdict.order.end(),
-                     [&](std::size_t a, std::size_t b) { return trial.contestants[a].loss < trial.contestants[b].loss; });
+    // Losses that differ by rounding alone are equal: file order decides, benchmarks last.
+    const double grain = 1e-12 * trial.loss_scale();
+    const auto rounded = [&](std::size_t c) { return grain > 0 ? std::round(trial.contestants[c].loss / grain) : trial.contestants[c].loss; };
+    std::stable_sort(verdict.order.begin(), verdict.order.end(), [&](std::size_t a, std::size_t b) { return rounded(a) < rounded(b); });
     int rank = 0;
     for (const std::size_t c : verdict.order)
         if (trial.contestants[c].is_theory) verdict.theories[c].rank = ++rank;
@@ -35,11 +37,11 @@ PairReport compare(const Trial& trial, const Survey& survey, std::size_t a, std:
     pair.a = a;
     pair.b = b;
     pair.theories = first.is_theory && second.is_theory;
-    const Eigen::VectorXd d = without_rounding(first.row_loss - second.row_loss, second.row_loss.maxCoeff());
+    const Eigen::VectorXd d = without_rounding(first.row_loss - second.row_loss, trial.loss_scale());
     pair.difference = d.mean();
     pair.relative = pair.difference / second.loss;
     pair.rows = survey.clusters.empty() ? row_test(d, level) : cluster_test(d, survey.clusters, survey.cluster_names.size(), level);
-    pair.corrected = corrected_test(without_rounding(first.split_loss - second.split_loss, second.split_loss.maxCoeff()), trial.folds, pair.difference, level);
+    pair.corrected = corrected_test(without_rounding(first.split_loss - second.split_loss, trial.loss_scale()), trial.folds, pair.difference, level);
     pair.p = std::isnan(pair.rows.p) || std::isnan(pair.corrected.p) ? kNaN : std::max(pair.rows.p, pair.corrected.p);
     pair.p_holm = kNaN;
     pair.low = std::min(pair.rows.low, pair.corrected.low);
@@ -92,7 +94,7 @@ void add_repeat_spread(const Trial& trial, PairReport& pair) {
     pair.monte_carlo_se = kNaN;
     if (trial.repeats < 2) return;
     const Eigen::VectorXd& b = trial.contestants[pair.b].repeat_loss;
-    pair.monte_carlo_se = standard_error(without_rounding(trial.contestants[pair.a].repeat_loss - b, b.maxCoeff()), {}, 0);
+    pair.monte_carlo_se = standard_error(without_rounding(trial.contestants[pair.a].repeat_loss - b, trial.loss_scale()), {}, 0);
 }
 
 void share_first_places(const Trial& trial, Verdict& verdict) {
@@ -102,7 +104,7 @@ void share_first_places(const Trial& trial, Verdict& verdict) {
         for (const std::size_t c : ranked) least = std::min(least, trial.contestants[c].repeat_loss(r));
         std::vector<std::size_t> first;
         for (const std::size_t c : ranked)
-            if (trial.contestants[c].repeat_loss(r) == least) first.push_back(c);
+            if (trial.contestants[c].repeat_loss(r) <= least + 1e-12 * trial.loss_scale()) first.push_back(c);
         for (const std::size_t c : first) verdict.theories[c].first_share += 1.0 / (static_cast<double>(first.size()) * trial.repeats);
     }
 }

@@ -25,12 +25,18 @@ std::string write_plan(const Outcome& outcome, const TerminalStyle& style);
 /// Advice as a list, each item wrapped; empty without advice.
 std::string write_advice(const std::vector<std::string>& advice, const TerminalStyle& style);
 
+/// What was done, in sentences with the published sources: for results.json and the notes of a table.
+std::string methods_text(const Outcome& outcome);
+
 void write_results_json(const Outcome& outcome, const Sink& sink);
 void write_ranking_csv(const Outcome& outcome, const Sink& sink);
 void write_pairs_csv(const Outcome& outcome, const Sink& sink);
 void write_indicators_csv(const Outcome& outcome, const Sink& sink);
 void write_losses_csv(const Outcome& outcome, const Sink& sink);
 void write_folds_csv(const Outcome& outcome, const Sink& sink);
+/// The same per segment, with a leading column `segment`.
+void write_segment_losses_csv(const Outcome& outcome, const Sink& sink);
+void write_segment_folds_csv(const Outcome& outcome, const Sink& sink);
 void write_disagreements_csv(const Outcome& outcome, const Sink& sink);
 void write_table_md(const Outcome& outcome, const Sink& sink);
 void write_study_yaml(const Outcome& outcome, const Sink& sink);
@@ -40,6 +46,7 @@ void write_manifest_json(const Outcome& outcome, const Sink& sink);
 struct ResultFile {
     const char* name;
     void (*write)(const Outcome&, const Sink&);
+    bool by_segment = false;  ///< written only where the study has segments
 };
 const std::vector<ResultFile>& result_files();
 

@@ -60,7 +60,8 @@ struct Blueprint {
     int equation_of(int block) const;
 };
 
-/// All theories of a study over one survey. The study's rules were checked on reading; names are known to exist.
+/// All theories of a study over one survey. The study's rules were checked on reading; names are known to exist. Throws
+/// FaultError for a term of categories that makes more than 500 columns.
 std::vector<Blueprint> build_blueprints(const Study& study, const Survey& survey, const Sample& sample);
 
 /// Sample columns that predict in the linear benchmark: every indicator and level that any theory or control uses, in order of

@@ -66,8 +66,6 @@ public:
     const Blueprint& blueprint() const { return plan_; }
     /// Origins near which the designs' columns lie, from a fit to all rows: shifting by them keeps digits in products of raw scores.
     void set_shifts(const Fit& whole);
-    /// The design's columns at the origin 0 (shift removed) for some rows: for cross-products over several theories.
-    const Eigen::VectorXd& shift(int design) const { return shifts_[static_cast<std::size_t>(design)]; }
 
     const std::string& name() const override { return plan_.name; }
     bool is_theory() const override { return true; }
@@ -90,10 +88,9 @@ private:
     void choose_active(const EquationPlan&, const Fit&, EquationFit&) const;
     void solve_linear(std::size_t equation, double n, Fit&) const;
     void accept(std::size_t equation, Fit&) const;
-    void compose_direct(Fit&) const;
     template <class Factor>
     void add_columns(const RowBlock&, const std::vector<int>& columns, const Eigen::VectorXd& gap_means, Factor factor, double* out) const;
-    void form_equation_column(const Fit&, const DesignColumn&, std::ptrdiff_t rows, const Eigen::MatrixXd& scores, double* out) const;
+    void form_equation_column(const DesignColumn&, std::ptrdiff_t rows, const Eigen::MatrixXd& scores, double* out) const;
 
     const Sample& sample_;
     Blueprint plan_;

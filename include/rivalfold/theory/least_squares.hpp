@@ -30,6 +30,8 @@ public:
     const Eigen::MatrixXd& slopes() const { return slopes_; }        ///< c x q
     int rank() const { return rank_ + 1; }                           ///< with the intercept
     bool full_rank() const { return rank_ == slopes_.rows(); }
+    /// Columns that the others determine: those left over when the pivots gave out; empty at full rank.
+    std::vector<Eigen::Index> dependent() const { return {order_.begin() + rank_, order_.end()}; }
     /// Residual sum of squares of outcome y, never below 0.
     double sse(const CrossProducts& sums, int outcome = 0) const;
     /// Inverse of xx (c x c). Precondition: full_rank().

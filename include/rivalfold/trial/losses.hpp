@@ -84,6 +84,9 @@ struct Trial {
         Eigen::VectorXd sse;               ///< per theory: its own target score (standard units) on all terms; NaN if it failed
         int rank = 0;                      ///< with the intercept
     } full_model;
+
+    /// What a loss is large or small against: the training mean's loss. Differences below 1e-12 of it are rounding.
+    double loss_scale() const { return contestants[theories.size()].loss; }
 };
 
 /// The contest: every contestant on every split. `threads` changes nothing but the time. Throws FaultError when an indicator does

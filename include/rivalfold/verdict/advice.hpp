@@ -13,7 +13,7 @@ namespace rivalfold {
 std::vector<std::string> advise_on_study(const Study& study, const Survey& survey, const Sample& sample, const FoldPlan& plan, const Trial& trial);
 
 /// Advice that the contest's outcome gives: theories that lose to a benchmark, unstable designs, levels not seen in training.
-std::vector<std::string> advise_on_outcome(const Study& study, const Survey& survey, const Trial& trial, const Verdict& verdict);
+std::vector<std::string> advise_on_outcome(const Study& study, const Survey& survey, const FoldPlan& plan, const Trial& trial, const Verdict& verdict);
 
 /// Cronbach's alpha (Cronbach 1951, Psychometrika 16, 297-334) of a construct's indicators over the rows complete on them; NaN
 /// for fewer than two indicators.

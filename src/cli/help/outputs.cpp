@@ -22,6 +22,8 @@ Files
                    averaged over repeats (in units u_j; see help losses)
    folds.csv       row, repeat, fold: the splits that were used. Give it back as
                    trial: {folds_file: ...} here or feed it to another program
+   segment_losses.csv, segment_folds.csv   with `segment`: the same for the
+                   contest within each segment, the segment's name first
    disagreements.csv  the two best-ranked theories row by row (10,000 rows at
                    most), largest difference of losses first: actual and
                    predicted means of the target's items in their own units,
@@ -45,6 +47,7 @@ results.json (schema 1)
      rows_read       rows in the file
      rows_used       rows in the contest, the same for every theory
      dropped         list of: reason (text), rows (list of row numbers)
+     filled          with rows: mean: name of a column, cells filled
    trial
      folds, repeats  counts; with repeats: auto also auto_repeats: true
      seed            the number that the splits were dealt from; null where a
@@ -141,6 +144,7 @@ results.json (schema 1)
                      difference_second (L(a) - L(b) within each), difference of
                      the two, se, t, df, p, p_holm, low, high
    verdict           the headline of the whole contest, one sentence
+   methods           what was done, in sentences with the published sources
    advice            list of sentences, as printed on standard error
    caution           what the contest cannot show
 

@@ -81,6 +81,9 @@ Segments   reversal: D_s - D_s' between two segments over sqrt(se_s^2 +
            se_s'^2), each se the larger of the two tests' standard errors,
            Welch's degrees of freedom (Welch 1947), Holm over all pairs of
            theories and of segments.
+With loss: absolute the Clark-West and encompassing tests and the weights of the
+stack still come from squared errors, as published; only the stack's own loss is
+absolute.
 All of these, for a target with several items, are means over the items in units
 u_j, averaged over repeats row by row, with variances by cluster where set.
 Identical theories: every d_i is the same number; t and p are empty, with the
