@@ -141,7 +141,7 @@ Json stack(const Outcome& outcome) {
 
 Json disagreement(const Outcome& outcome) {
     const Disagreement& d = outcome.verdict.disagreement;
-    if (!d.present) return nullptr;
+    if (!d.present) return {{"reason", "fewer than two theories were judged, or the two best make the same predictions"}};
     Json thirds = Json::array();
     for (const Disagreement::Third& third : d.thirds) {
         Json one = {{"along", third.along}, {"third", third.third}, {"from", third.from}, {"to", third.to}, {"rows", third.rows}, {"difference", third.difference}, {"se", number(third.se)}};

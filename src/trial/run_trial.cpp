@@ -132,7 +132,7 @@ Eigen::Index Contest::bytes_per_split() const {
 
 void Contest::run_repeats(const FoldPlan& plan, int first, int last, const std::function<void(double)>& progress) {
     // A wave holds as many repeats as keep its buffers small.
-    const Eigen::Index splits = std::max<Eigen::Index>(1, kWaveBytes / bytes_per_split());
+    const Eigen::Index splits = std::clamp<Eigen::Index>(kWaveBytes / bytes_per_split(), 1, 1024);
     const int wave = static_cast<int>(std::max<Eigen::Index>(1, std::min<Eigen::Index>(200000 / sample_.n, splits / std::min(plan.folds, 1024))));
     for (int r = first; r < last; r += wave) {
         run_wave(plan, r, std::min(last, r + wave));

@@ -25,7 +25,7 @@ TEST_CASE("an indicator that is constant in a training fold is a fault with colu
     for (const unsigned threads : {1U, 3U})
         CHECK(fault_of([&] { run(contest, threads); }) ==
               fmt::format("refits.csv: column \"skl2\": has one and the same value in all training rows of repeat 1, fold {}; it cannot be standardised there\n"
-                          "drop the indicator, or use fewer folds",
+                          "drop the indicator, or use more folds, so that each trains on more rows",
                           contest.plan.fold(0, 17) + 1));
     answers.values(3, answers.at("skl2")) = 5;
     std::string clean = fault_of([&] { run(prepare(study_text("folds: 40"), answers.csv())); });
@@ -41,7 +41,7 @@ TEST_CASE("an indicator with no answer left in a training fold is the same fault
     for (std::size_t i = 0; i < 40; ++i) contest.plan.fold_of[i] = i == 17 || i == 18 || i > 30 ? 1 : 0;
     CHECK(fault_of([&] { run(contest); }) ==
           "refits.csv: column \"skl2\": has one and the same value in all training rows of repeat 1, fold 2; it cannot be standardised there\n"
-          "drop the indicator, or use fewer folds");
+          "drop the indicator, or use more folds, so that each trains on more rows");
 }
 
 TEST_CASE("a theory that cannot be fitted is kept with its reason, and the others are as without it", "[trial]") {

@@ -67,11 +67,11 @@ TEST_CASE("a square without its score is advised against", "[verdict]") {
 TEST_CASE("a minimum or maximum over unlike scales is advised against, with the scales", "[verdict]") {
     CHECK(says(advice(kPlain + "  - {name: scarcest, equations: {delivery: [{minimum: [planning, hours]}]}}\n"),
                "Theory \"scarcest\": minimum(planning, hours) compares scores on unlike scales (planning 1 to 7, hours 0 to 40); under metric: standard it compares "
-               "standings within this sample, not amounts. Bring the members to one scale before reading it as the scarcest of them."));
+               "standings within this sample, not amounts. Bring the members to one scale before reading it as the scarcest of them, or declare their range if it is the same."));
     CHECK(says(advice(kPlain + "  - {name: strongest, equations: {delivery: [{maximum: [hours, skill]}]}}\n", with_hours(invented_answers(200)),
                       kConstructs + "metric: response\n"),
                "Theory \"strongest\": maximum(hours, skill) compares scores on unlike scales (hours 0 to 40, skill 1 to 7); the smaller unit decides which one it "
-               "picks. Bring the members to one scale before reading it as the strongest of them."));
+               "picks. Bring the members to one scale before reading it as the strongest of them, or declare their range if it is the same."));
     CHECK_FALSE(mentions(advice(kPlain + "  - {name: scarcest, equations: {delivery: [{minimum: [planning, skill]}]}}\n"), "unlike scales"));
 }
 
@@ -127,8 +127,8 @@ TEST_CASE("few training rows per coefficient are told with both numbers", "[verd
 
 TEST_CASE("a linear benchmark with as many predictors as training rows is told", "[verdict]") {
     const std::string theories = kPlain + "  - {name: one, equations: {delivery: [planning]}}\n";
-    const std::string sentence = "The linear benchmark has 6 predictors but a fold trains on only 6 rows: it fits its training rows exactly and predicts poorly. Judge the "
-                                 "theories by the training mean instead.";
+    const std::string sentence = "The linear benchmark has 6 predictors but a fold trains on only 6 rows: it fits its training rows exactly, and how well it then predicts "
+                                 "is chance. Judge the theories by the training mean.";
     CHECK(says(advice(theories, with_hours(invented_answers(12)), kConstructs, "folds: 2, repeats: 2"), sentence));
     CHECK_FALSE(mentions(advice(theories, with_hours(invented_answers(14)), kConstructs, "folds: 2, repeats: 2"), "The linear benchmark has"));
 }

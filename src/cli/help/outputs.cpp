@@ -119,6 +119,8 @@ results.json (schema 1)
                      words
      verdict         first predicts better, second predicts better,
                      practically equal, or unresolved
+   confidence_set    resamples of its bootstrap; grouped: above 20,000 rows they
+                     were first summed in 5,000 groups dealt at random
    stack             null with fewer than two theories that did not fail;
                      the stacked combination of theories: loss; weights (name,
                      weight: means over splits); difference and relative to the
