@@ -10,16 +10,19 @@
 namespace {
 
 void print(const rivalfold::Outcome& outcome) {
-    std::printf("%s\n%zu rows, %d repeats of %d folds\n\n", outcome.study.title.c_str(), outcome.survey.n(), outcome.trial.repeats, outcome.trial.folds);
+    std::printf("%s\n%zu rows, %d repeats of %d folds\n\n", outcome.study.title.c_str(), outcome.survey.n(),
+                outcome.trial.repeats, outcome.trial.folds);
     std::printf("   loss      q2  name\n");
     for (const std::size_t contestant : outcome.verdict.order) {  // smallest held-out loss first, benchmarks among them
         const rivalfold::ContestantLosses& losses = outcome.trial.contestants[contestant];
-        std::printf("%7.4f %7.4f  %s%s\n", losses.loss, losses.q2, losses.name.c_str(), losses.is_theory ? "" : " (benchmark)");
+        std::printf("%7.4f %7.4f  %s%s\n", losses.loss, losses.q2, losses.name.c_str(),
+                    losses.is_theory ? "" : " (benchmark)");
     }
     for (const rivalfold::ContestantLosses& losses : outcome.trial.contestants)
         if (losses.failed) std::printf(" failed          %s: %s\n", losses.name.c_str(), losses.reason.c_str());
     std::printf("\n%s\n", outcome.verdict.headline.c_str());
-    std::printf("Prediction is not causation: this says nothing of what would happen if somebody changed an antecedent.\n");
+    std::printf(
+        "Prediction is not causation: this says nothing of what would happen if somebody changed an antecedent.\n");
 }
 
 }  // namespace
@@ -33,7 +36,8 @@ int main(int argc, char** argv) {
         print(rivalfold::run_contest(rivalfold::read_study(argv[1])));
         return 0;
     } catch (const rivalfold::FaultError& error) {  // the study or its data is wrong: every fault, with its place
-        std::fprintf(stderr, "%s\n%zu thing%s to put right\n", error.what(), error.faults().size(), error.faults().size() == 1 ? "" : "s");
+        std::fprintf(stderr, "%s\n%zu thing%s to put right\n", error.what(), error.faults().size(),
+                     error.faults().size() == 1 ? "" : "s");
         return 1;
     } catch (const std::exception& error) {
         std::fprintf(stderr, "the contest could not be run: %s\n", error.what());

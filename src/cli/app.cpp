@@ -3,9 +3,9 @@
 #include "rivalfold/report/results_folder.hpp"
 #include "rivalfold/study/fault.hpp"
 
-#include <CLI/CLI.hpp>
 #include <fmt/format.h>
 #include <fmt/ranges.h>
+#include <CLI/CLI.hpp>
 
 #include <algorithm>
 #include <cstdio>
@@ -24,12 +24,14 @@ int wrong_command_line(const std::string& message) {
 /// The first word that is no option must be a command; the parser itself would not say which word it missed.
 std::string unknown_command(const CLI::App& app, int argc, const char* const* argv) {
     std::vector<std::string> names;
-    for (const CLI::App* command : app.get_subcommands([](const CLI::App*) { return true; })) names.push_back(command->get_name());
+    for (const CLI::App* command : app.get_subcommands([](const CLI::App*) { return true; }))
+        names.push_back(command->get_name());
     if (argc < 2 || argv[1][0] == '-') return {};
     const std::string word = argv[1];
     if (std::find(names.begin(), names.end(), word) != names.end()) return {};
     const std::string hint = did_you_mean(word, names);
-    return fmt::format("no command \"{}\"; expected one of {}{}{}", word, fmt::join(names, ", "), hint.empty() ? "" : "\n", hint);
+    return fmt::format("no command \"{}\"; expected one of {}{}{}", word, fmt::join(names, ", "),
+                       hint.empty() ? "" : "\n", hint);
 }
 
 std::string in_words(const CLI::App& app, const CLI::ParseError& error) {
@@ -39,12 +41,15 @@ std::string in_words(const CLI::App& app, const CLI::ParseError& error) {
     std::string text = error.what(), hint;
     if (dynamic_cast<const CLI::ExtrasError*>(&error) != nullptr) {
         const std::vector<std::string> extra = app.remaining(true);
-        const auto option = std::find_if(extra.begin(), extra.end(), [](const std::string& word) { return word.front() == '-'; });
+        const auto option =
+            std::find_if(extra.begin(), extra.end(), [](const std::string& word) { return word.front() == '-'; });
         if (option == extra.end()) {
             text = fmt::format("\"{}\" is one argument too many", extra.empty() ? "" : extra.front());
         } else {
             std::vector<std::string> names;
-            for (const CLI::Option* known : command.get_options([](const CLI::Option* o) { return o->nonpositional(); })) names.push_back(known->get_name());
+            for (const CLI::Option* known :
+                 command.get_options([](const CLI::Option* o) { return o->nonpositional(); }))
+                names.push_back(known->get_name());
             text = fmt::format("{} has no option \"{}\"; expected one of {}", called, *option, fmt::join(names, ", "));
             hint = did_you_mean(*option, names);
         }
@@ -67,7 +72,9 @@ int run_chosen(const Chosen& chosen) {
         print(stderr, "rivalfold: error: out of memory; use fewer rows, columns or repeats\n");
         return kInternalFault;
     } catch (const std::exception& error) {
-        print(stderr, fmt::format("rivalfold: internal fault: {}\nThis is a fault of the program, not of your files; please report it with the study file.\n", error.what()));
+        print(stderr, fmt::format("rivalfold: internal fault: {}\nThis is a fault of the program, not of your files; "
+                                  "please report it with the study file.\n",
+                                  error.what()));
         return kInternalFault;
     }
 }
@@ -81,12 +88,15 @@ int read_and_run(int argc, const char* const* argv) {
     app.get_formatter()->column_width(23);
     app.set_version_flag("--version", std::string("rivalfold ") + RIVALFOLD_VERSION);
     app.require_subcommand(0, 1);
-    app.footer("Start: rivalfold help study\nExit statuses: 0 done, 1 study or data wrong, 2 command line wrong,\n  3 internal fault");
+    app.footer(
+        "Start: rivalfold help study\nExit statuses: 0 done, 1 study or data wrong, 2 command line wrong,\n  3 "
+        "internal fault");
     Chosen chosen;
     add_check(app, chosen);
     add_run(app, chosen);
     add_help(app, chosen);
-    if (const std::string message = unknown_command(app, argc, argv); !message.empty()) return wrong_command_line(message);
+    if (const std::string message = unknown_command(app, argc, argv); !message.empty())
+        return wrong_command_line(message);
     try {
         app.parse(argc, argv);
     } catch (const CLI::CallForHelp&) {
@@ -114,7 +124,8 @@ int read_and_run(int argc, const char* const* argv) {
 int run_app(int argc, const char* const* argv) {
     const int status = read_and_run(argc, argv);
     if (status != kDone || std::ferror(stdout) == 0) return status;
-    print(stderr, "rivalfold: error: standard output could not be written in full\n");  // a full disk behind a redirection
+    print(stderr,
+          "rivalfold: error: standard output could not be written in full\n");  // a full disk behind a redirection
     return kWrongInput;
 }
 

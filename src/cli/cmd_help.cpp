@@ -3,8 +3,8 @@
 #include "rivalfold/study/fault.hpp"
 #include "rivalfold/study/help_study.hpp"
 
-#include <CLI/CLI.hpp>
 #include <fmt/format.h>
+#include <CLI/CLI.hpp>
 
 #include <array>
 #include <memory>
@@ -47,7 +47,8 @@ int run_help(const HelpOptions& options) {
     std::string known;
     for (const std::string& name : names) known += (known.empty() ? "" : ", ") + name;
     const std::string hint = did_you_mean(options.topic, names);
-    print(stderr, fmt::format("rivalfold: error: no help topic \"{}\"; expected one of {}{}{}\n", options.topic, known, hint.empty() ? "" : "\n", hint));
+    print(stderr, fmt::format("rivalfold: error: no help topic \"{}\"; expected one of {}{}{}\n", options.topic, known,
+                              hint.empty() ? "" : "\n", hint));
     return kWrongCommandLine;
 }
 

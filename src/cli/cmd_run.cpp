@@ -4,8 +4,8 @@
 #include "rivalfold/report/results_folder.hpp"
 #include "rivalfold/study/read_study.hpp"
 
-#include <CLI/CLI.hpp>
 #include <fmt/format.h>
+#include <CLI/CLI.hpp>
 
 #include <charconv>
 #include <memory>
@@ -40,7 +40,8 @@ int run_run(const RunOptions& options) {
     save_contest(outcome, folder);
     print(stdout, write_tables(outcome, style_of(stdout)));
     print(stderr, write_advice(outcome.advice, style_of(stderr)));
-    if (outcome.study.verdict.completeness) print(stderr, fmt::format("completeness took {:.1f} s\n", outcome.completeness.seconds));
+    if (outcome.study.verdict.completeness)
+        print(stderr, fmt::format("completeness took {:.1f} s\n", outcome.completeness.seconds));
     print(stderr, fmt::format("results: {}\n", folder));
     return kDone;
 }
@@ -52,8 +53,11 @@ void add_run(CLI::App& app, Chosen& chosen) {
     CLI::App* command = app.add_subcommand("run", "Run the contest: print ranking and verdict, write results");
     command->footer("Example: rivalfold run refits.yaml -o refits.results");
     command->add_option("STUDY", options->study, "the study file (YAML)")->type_name("FILE")->required();
-    command->add_option("-o,--output", options->folder, "results folder (default: STUDY's name with .results)")->type_name("DIR");
-    command->add_option("--threads", options->threads, "threads; change only the time (default: one per core)")->type_name("N")->check(fault_of_threads);
+    command->add_option("-o,--output", options->folder, "results folder (default: STUDY's name with .results)")
+        ->type_name("DIR");
+    command->add_option("--threads", options->threads, "threads; change only the time (default: one per core)")
+        ->type_name("N")
+        ->check(fault_of_threads);
     command->callback([options, &chosen] { chosen = [options] { return run_run(*options); }; });
 }
 

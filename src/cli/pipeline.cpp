@@ -51,19 +51,23 @@ void run_stages(Outcome& outcome, const RunSettings& settings, bool with_contest
     outcome.survey.values.resize(0, 0);
     outcome.plan = plan_folds(study, outcome.survey);
     outcome.reliabilities = measure_reliabilities(study, outcome.survey, *outcome.sample);
-    outcome.trial = with_contest ? run_trial(study, outcome.survey, *outcome.sample, outcome.plan, outcome.run.threads, settings.progress)
+    outcome.trial = with_contest ? run_trial(study, outcome.survey, *outcome.sample, outcome.plan, outcome.run.threads,
+                                             settings.progress)
                                  : fit_all_rows(study, outcome.survey, *outcome.sample, outcome.run.threads);
     outcome.advice = advise_on_study(study, outcome.survey, *outcome.sample, outcome.plan, outcome.trial);
     if (!with_contest) return;
     outcome.verdict = reach_verdict(study, outcome.survey, *outcome.sample, outcome.trial);
     if (study.verdict.completeness)
-        outcome.completeness = measure_completeness(study, outcome.survey, *outcome.sample, outcome.plan, outcome.trial, outcome.run.threads);
-    const std::vector<std::string> more = advise_on_outcome(study, outcome.survey, outcome.plan, outcome.trial, outcome.verdict);
+        outcome.completeness = measure_completeness(study, outcome.survey, *outcome.sample, outcome.plan, outcome.trial,
+                                                    outcome.run.threads);
+    const std::vector<std::string> more =
+        advise_on_outcome(study, outcome.survey, outcome.plan, outcome.trial, outcome.verdict);
     outcome.advice.insert(outcome.advice.end(), more.begin(), more.end());
 }
 
 /// The same contest within one segment; faults and advice say which.
-Outcome run_segment(const Outcome& whole, Survey survey, const std::string& name, const RunSettings& settings, bool with_contest) {
+Outcome run_segment(const Outcome& whole, Survey survey, const std::string& name, const RunSettings& settings,
+                    bool with_contest) {
     Outcome segment;
     segment.study = whole.study;
     segment.run = whole.run;
@@ -86,10 +90,12 @@ Outcome run_study(const Study& study, const RunSettings& settings, bool with_con
     outcome.study = study;
     outcome.survey = read_survey(study);
     std::vector<Survey> parts;
-    for (std::size_t s = 0; s < outcome.survey.segment_names.size(); ++s) parts.push_back(survey_of_segment(study, outcome.survey, s));
+    for (std::size_t s = 0; s < outcome.survey.segment_names.size(); ++s)
+        parts.push_back(survey_of_segment(study, outcome.survey, s));
     run_stages(outcome, settings, with_contest);
     for (std::size_t s = 0; s < parts.size(); ++s)
-        outcome.segments.push_back(run_segment(outcome, std::move(parts[s]), outcome.survey.segment_names[s], settings, with_contest));
+        outcome.segments.push_back(
+            run_segment(outcome, std::move(parts[s]), outcome.survey.segment_names[s], settings, with_contest));
     add_segment_advice(outcome);
     if (with_contest) outcome.reversals = find_reversals(outcome);
     outcome.run.seconds = std::chrono::duration<double>(std::chrono::steady_clock::now() - begun).count();

@@ -19,7 +19,8 @@ TerminalStyle style_of(std::FILE* stream) {
     const char* term = std::getenv("TERM");
     style.colour = !(no_color && *no_color) && !(term && std::string_view(term) == "dumb");
     winsize size{};
-    if (ioctl(descriptor, TIOCGWINSZ, &size) == 0 && size.ws_col > 0) style.width = std::clamp<int>(size.ws_col, 60, 100);
+    if (ioctl(descriptor, TIOCGWINSZ, &size) == 0 && size.ws_col > 0)
+        style.width = std::clamp<int>(size.ws_col, 60, 100);
     return style;
 }
 

@@ -9,12 +9,14 @@
 
 namespace rivalfold {
 
-/// Colour only on a terminal without NO_COLOR (no-color.org) and TERM other than dumb; width of the terminal within 60 .. 100, else 80.
+/// Colour only on a terminal without NO_COLOR (no-color.org) and TERM other than dumb; width of the terminal within 60
+/// .. 100, else 80.
 TerminalStyle style_of(std::FILE* stream);
 
 void print(std::FILE* stream, std::string_view text);
 
-/// One line on standard error that is redrawn in place; appears only on a terminal and only after a second; erased at the end.
+/// One line on standard error that is redrawn in place; appears only on a terminal and only after a second; erased at
+/// the end.
 class ProgressLine {
 public:
     ProgressLine();

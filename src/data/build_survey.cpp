@@ -132,9 +132,7 @@ int SurveyBuilder::number_index(std::size_t column) const {
     return index_in(table_.chosen.numbers, column, table_.header);
 }
 
-int SurveyBuilder::text_index(std::size_t column) const {
-    return index_in(table_.chosen.texts, column, table_.header);
-}
+int SurveyBuilder::text_index(std::size_t column) const { return index_in(table_.chosen.texts, column, table_.header); }
 
 void SurveyBuilder::check_answers(const std::vector<std::size_t>& rows) {
     if (rows.empty()) return;
@@ -144,9 +142,10 @@ void SurveyBuilder::check_answers(const std::vector<std::size_t>& rows) {
                                       : !table_.texts[static_cast<std::size_t>(column.text)][row].empty();
         };
         if (std::any_of(rows.begin(), rows.end(), answered)) continue;
-        say(column.place, fmt::format("column {} holds no answer in any of the {} rows that could be used; leave it out, or "
-                                      "check missing_codes",
-                                      in_quotes(column.name), rows.size()));
+        say(column.place,
+            fmt::format("column {} holds no answer in any of the {} rows that could be used; leave it out, or "
+                        "check missing_codes",
+                        in_quotes(column.name), rows.size()));
     }
 }
 
@@ -158,9 +157,10 @@ void SurveyBuilder::check_variables() {
         if (spread.low != spread.high) continue;
         const Variable& variable = survey_.variables[i];
         const double raw = variable.reversed ? variable.reflect - spread.low : spread.low;
-        say(places_[i], fmt::format("column {} of construct {} is {} in all {} rows used; leave it out: a constant says "
-                                    "nothing about differences",
-                                    in_quotes(variable.column), in_quotes(owners_[i]->construct->name.text), raw, n));
+        say(places_[i],
+            fmt::format("column {} of construct {} is {} in all {} rows used; leave it out: a constant says "
+                        "nothing about differences",
+                        in_quotes(variable.column), in_quotes(owners_[i]->construct->name.text), raw, n));
     }
 }
 
@@ -169,13 +169,15 @@ void SurveyBuilder::code_categories() {
         const NeededColumn& column = category_columns_[i];
         Levels levels = code_levels(table_.texts[static_cast<std::size_t>(column.text)], choice_.rows);
         if (levels.names.size() == 1)
-            say(column.place, fmt::format("category {} is {} in all {} rows used; leave it out: one level says nothing "
-                                          "about differences",
-                                          in_quotes(column.name), in_quotes(levels.names.front()), choice_.rows.size()));
+            say(column.place,
+                fmt::format("category {} is {} in all {} rows used; leave it out: one level says nothing "
+                            "about differences",
+                            in_quotes(column.name), in_quotes(levels.names.front()), choice_.rows.size()));
         if (levels.names.size() > kMostLevels)
-            say(column.place, fmt::format("category {} has {} levels, above the limit of {}: it looks like an identifier; "
-                                          "if it is a number, declare it under indicators",
-                                          in_quotes(column.name), levels.names.size(), kMostLevels));
+            say(column.place,
+                fmt::format("category {} has {} levels, above the limit of {}: it looks like an identifier; "
+                            "if it is a number, declare it under indicators",
+                            in_quotes(column.name), levels.names.size(), kMostLevels));
         survey_.categories[i].levels = std::move(levels.names);
         survey_.categories[i].codes = std::move(levels.codes);
     }

@@ -1,5 +1,5 @@
-// From the table and the names resolved in its header to the survey: rows, variables, categories, clusters, segments, and
-// what is wrong with them. Knows nothing of files.
+// From the table and the names resolved in its header to the survey: rows, variables, categories, clusters, segments,
+// and what is wrong with them. Knows nothing of files.
 #pragma once
 
 #include "data/choose_rows.hpp"
@@ -47,9 +47,9 @@ private:
     const Table& table_;
     FoundColumns found_;
     Survey survey_;
-    std::vector<ValueColumn> value_columns_;   ///< per variable
-    std::vector<const FoundConstruct*> owners_;  ///< per variable, the construct that first used it
-    std::vector<Place> places_;                ///< per variable, where the study names it
+    std::vector<ValueColumn> value_columns_;      ///< per variable
+    std::vector<const FoundConstruct*> owners_;   ///< per variable, the construct that first used it
+    std::vector<Place> places_;                   ///< per variable, where the study names it
     std::vector<NeededColumn> category_columns_;  ///< per category
     std::vector<NeededColumn> needed_;
     std::vector<RangeRule> ranges_;

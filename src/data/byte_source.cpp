@@ -83,7 +83,8 @@ std::size_t FileSource::read_at(std::uint64_t offset, char* into, std::size_t mo
         const ssize_t got = pread(descriptor_, into + filled, most - filled, static_cast<off_t>(offset + filled));
         if (got == 0) break;
         if (got < 0 && errno == EINTR) continue;
-        if (got < 0) throw FaultError(Fault{path_, {}, {}, fmt::format("cannot be read: {}", message_of(errno)), {}, {}});
+        if (got < 0)
+            throw FaultError(Fault{path_, {}, {}, fmt::format("cannot be read: {}", message_of(errno)), {}, {}});
         filled += static_cast<std::size_t>(got);
     }
     return filled;

@@ -14,9 +14,9 @@ struct Cell {
     std::size_t line_breaks = 0;  ///< inside the quotes: LF, CRLF or CR
     bool row_ends = false;        ///< it is the last of its row
     bool quoted = false;
-    bool doubled = false;  ///< holds doubled quotes
-    bool trailing = false; ///< something follows the closing quote
-    bool open = false;     ///< the closing quote is missing
+    bool doubled = false;   ///< holds doubled quotes
+    bool trailing = false;  ///< something follows the closing quote
+    bool open = false;      ///< the closing quote is missing
 };
 
 /// The quoted cell whose opening quote stands at `quote`.

@@ -117,11 +117,14 @@ FaultLog check_ranges(const std::string& file, const Table& table, const std::ve
     for (std::size_t i = 0; i < first.size() && !log.full(); ++i) {
         const RangeRule& rule = rules[first[i].rule];
         const double value = table.numbers(static_cast<Eigen::Index>(first[i].row), rule.number);
-        log.add({file, {}, fmt::format("row {}, column {}", first[i].row + 1, in_quotes(rule.column)),
+        log.add({file,
+                 {},
+                 fmt::format("row {}, column {}", first[i].row + 1, in_quotes(rule.column)),
                  fmt::format("{} is outside the range {} to {} of construct {}; if it means \"no answer\", add it to "
                              "missing_codes",
                              value, rule.low, rule.high, in_quotes(rule.construct)),
-                 {}, {}});
+                 {},
+                 {}});
     }
     while (log.count() < count) log.count_only();
     return log;

@@ -17,8 +17,8 @@ namespace rivalfold {
 /// A column in which a used row must have an answer.
 struct NeededColumn {
     std::string name;
-    int number = -1;  ///< index into Table::numbers' columns
-    int text = -1;    ///< index into Table::texts
+    int number = -1;      ///< index into Table::numbers' columns
+    int text = -1;        ///< index into Table::texts
     bool always = false;  ///< also under rows: mean
     Place place;          ///< where the study names it
 };

@@ -142,9 +142,10 @@ private:
         }
         if (found_.segment && of_target.count(*found_.segment) > 0)
             say(study_.data.segment->column.place,
-                fmt::format("the segment column {} measures the target {}; expected another column: segments cut by the "
-                            "outcome hide what is to be predicted",
-                            in_quotes(header_[*found_.segment]), in_quotes(study_.target.text)));
+                fmt::format(
+                    "the segment column {} measures the target {}; expected another column: segments cut by the "
+                    "outcome hide what is to be predicted",
+                    in_quotes(header_[*found_.segment]), in_quotes(study_.target.text)));
     }
 
     void say(Place place, std::string message, std::string hint = {}) {

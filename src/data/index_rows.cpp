@@ -15,9 +15,12 @@ constexpr std::size_t kStretchBytes = std::size_t{1} << 18;
 class RowCounter {
 public:
     RowCounter(const ByteSource& source, const Layout& layout)
-        : source_(source), layout_(layout), one_column_(layout.header.size() == 1),
+        : source_(source),
+          layout_(layout),
+          one_column_(layout.header.size() == 1),
           buffer_(static_cast<std::size_t>(std::min<std::uint64_t>(kBlockBytes, source.size() + 1))),
-          base_(layout.rows_begin), line_(layout.first_line) {
+          base_(layout.rows_begin),
+          line_(layout.first_line) {
         stretch_ = {base_, 0, 0, 0, line_};
     }
 
@@ -111,8 +114,9 @@ private:
         for (std::size_t column = 0; at < end; ++column) {
             const Cell cell = next_cell(at, end, layout_.delimiter);
             if (cell.text.size() > kMostCellBytes)
-                fail(column, fmt::format("this cell is longer than {} bytes; {}", kMostCellBytes,
-                                         cell.quoted ? "is its closing quote missing?" : "is this a delimited text file?"));
+                fail(column,
+                     fmt::format("this cell is longer than {} bytes; {}", kMostCellBytes,
+                                 cell.quoted ? "is its closing quote missing?" : "is this a delimited text file?"));
             at = cell.next;
         }
     }
@@ -139,8 +143,8 @@ private:
     const bool one_column_;
     std::vector<char> buffer_;
     std::size_t filled_ = 0;
-    std::uint64_t base_;          ///< offset in the file of the buffer's first byte
-    const char* nul_ = nullptr;   ///< the first NUL byte in the buffer
+    std::uint64_t base_;         ///< offset in the file of the buffer's first byte
+    const char* nul_ = nullptr;  ///< the first NUL byte in the buffer
     std::size_t line_;
     std::size_t trailing_blanks_ = 0;
     Stretch stretch_;

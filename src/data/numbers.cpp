@@ -19,7 +19,8 @@ bool is_tiny(std::string_view text) {
 
 /// std::from_chars over the whole text, with the leading '+' that it does not know.
 NumberCell convert(std::string_view text) {
-    NumberCell cell{kMissing, Finding::not_a_number, text.find('.') != std::string_view::npos ? Mark::point : Mark::none};
+    NumberCell cell{kMissing, Finding::not_a_number,
+                    text.find('.') != std::string_view::npos ? Mark::point : Mark::none};
     if (text.starts_with('+') && text.size() > 1 && text[1] != '-') text.remove_prefix(1);
     double value = 0;
     const auto [stop, error] = std::from_chars(text.data(), text.data() + text.size(), value);
@@ -35,9 +36,9 @@ NumberCell convert(std::string_view text) {
     }
     if (std::isnan(value)) return cell;
     cell.value = value;
-    cell.finding = std::isinf(value)                ? Finding::infinite
+    cell.finding = std::isinf(value)             ? Finding::infinite
                    : std::abs(value) > kMostSize ? Finding::enormous
-                                                    : Finding::number;
+                                                 : Finding::number;
     return cell;
 }
 

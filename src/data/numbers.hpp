@@ -74,7 +74,8 @@ inline const char* read_plain_number(const char* at, bool decimal_comma, double&
     if (negative) ++at;
     const char* const first = at;
     std::uint64_t digits = 0;
-    for (; static_cast<unsigned char>(*at - '0') < 10; ++at) digits = digits * 10 + static_cast<std::uint64_t>(*at - '0');
+    for (; static_cast<unsigned char>(*at - '0') < 10; ++at)
+        digits = digits * 10 + static_cast<std::uint64_t>(*at - '0');
     std::ptrdiff_t n_digits = at - first;
     std::ptrdiff_t n_decimals = 0;
     mark = Mark::none;

@@ -27,7 +27,8 @@ std::vector<ColumnUse> uses_of(const ColumnChoice& choice, const Layout& layout,
     for (std::size_t i = 0; i < choice.texts.size(); ++i) uses.at(choice.texts[i]).text = static_cast<int>(i);
     for (std::size_t column = 0; column < uses.size(); ++column)
         if ((uses[column].number >= 0 || uses[column].text >= 0) && layout.header[column].empty())
-            faults.add({layout.file, {}, fmt::format("header, column {}", column + 1), "this column has no name", {}, {}});
+            faults.add(
+                {layout.file, {}, fmt::format("header, column {}", column + 1), "this column has no name", {}, {}});
     return uses;
 }
 
@@ -62,21 +63,28 @@ void make_room(Table& table, const std::string& file) {
         table.texts.assign(table.chosen.texts.size(), {});
         for (auto& column : table.texts) column.resize(table.n_rows);
     } catch (const std::bad_alloc&) {
-        throw FaultError(Fault{file, {}, {},
+        throw FaultError(Fault{file,
+                               {},
+                               {},
                                fmt::format("{} rows of {} columns need more memory than there is", table.n_rows,
                                            n_numbers + table.chosen.texts.size()),
-                               {}, {}});
+                               {},
+                               {}});
     }
 }
 
 /// One column must not mix "3.5" and "3,5": one of the two is then likely to mean thousands.
-void check_marks(const std::vector<MarksSeen>& marks, const Layout& layout, const ColumnChoice& chosen, FaultLog& faults) {
+void check_marks(const std::vector<MarksSeen>& marks, const Layout& layout, const ColumnChoice& chosen,
+                 FaultLog& faults) {
     for (std::size_t i = 0; i < marks.size(); ++i) {
         if (marks[i].point == MarksSeen::kNever || marks[i].comma == MarksSeen::kNever) continue;
-        faults.add({layout.file, {}, fmt::format("column {}", in_quotes(layout.header[chosen.numbers[i]])),
+        faults.add({layout.file,
+                    {},
+                    fmt::format("column {}", in_quotes(layout.header[chosen.numbers[i]])),
                     fmt::format("mixes a decimal point (row {}) and a decimal comma (row {}); use one of them",
                                 marks[i].point + 1, marks[i].comma + 1),
-                    {}, {}});
+                    {},
+                    {}});
     }
 }
 
@@ -108,8 +116,8 @@ void read_stretches(const ByteSource& source, const Layout& layout, const RowInd
 
 }  // namespace
 
-Table read_source(const ByteSource& source, const std::string& file, const ReadRules& rules, const ChooseColumns& choose,
-                  unsigned n_threads) {
+Table read_source(const ByteSource& source, const std::string& file, const ReadRules& rules,
+                  const ChooseColumns& choose, unsigned n_threads) {
     FaultLog faults;
     const Layout layout = read_layout(source, file, rules.delimiter, faults);
     Table table;

@@ -8,7 +8,7 @@
 namespace rivalfold {
 
 /// As read_delimited(); the result and the faults are the same for any number of threads (0: one per core, at most 8).
-Table read_source(const ByteSource& source, const std::string& file, const ReadRules& rules, const ChooseColumns& choose,
-                  unsigned n_threads = 0);
+Table read_source(const ByteSource& source, const std::string& file, const ReadRules& rules,
+                  const ChooseColumns& choose, unsigned n_threads = 0);
 
 }  // namespace rivalfold

@@ -17,10 +17,12 @@ constexpr std::size_t kBlockStride = kBlockRows + 8;  ///< not a power of two: c
 std::string what_is_wrong(const NumberCell& number, std::string_view text, bool decimal_comma) {
     constexpr std::string_view kCodes = "if it means \"no answer\", add it to missing_codes";
     switch (number.finding) {
-        case Finding::infinite: return fmt::format("{} is infinite; {}", in_quotes(text), kCodes);
+        case Finding::infinite:
+            return fmt::format("{} is infinite; {}", in_quotes(text), kCodes);
         case Finding::enormous:
             return fmt::format("{} is enormous (above 1e100 in size); {}", in_quotes(text), kCodes);
-        default: break;
+        default:
+            break;
     }
     const bool comma_in_comma_file = !decimal_comma && text.find(',') != std::string_view::npos;
     return fmt::format("{} is not a number; {}", in_quotes(text),
@@ -31,8 +33,13 @@ std::string what_is_wrong(const NumberCell& number, std::string_view text, bool 
 
 StretchReader::StretchReader(const ByteSource& source, const Layout& layout, const NumberRules& rules,
                              const std::vector<ColumnUse>& uses, Table& table)
-    : source_(source), layout_(layout), rules_(rules), uses_(uses), table_(table),
-      block_(kBlockStride * table.chosen.numbers.size()), marks_(table.chosen.numbers.size()) {}
+    : source_(source),
+      layout_(layout),
+      rules_(rules),
+      uses_(uses),
+      table_(table),
+      block_(kBlockStride * table.chosen.numbers.size()),
+      marks_(table.chosen.numbers.size()) {}
 
 void StretchReader::read(const Stretch& stretch, FaultLog& faults) {
     // The line end after the last byte lets the number reader look ahead without asking for the end.
@@ -107,8 +114,12 @@ const char* StretchReader::read_row(const char* at) {
         if (faults_->full())
             faults_->count_only();
         else
-            faults_->add({layout_.file, {}, position_of(row_, line_),
-                          fmt::format("expected {} cells, found {}", n_columns, column), {}, {}});
+            faults_->add({layout_.file,
+                          {},
+                          position_of(row_, line_),
+                          fmt::format("expected {} cells, found {}", n_columns, column),
+                          {},
+                          {}});
     }
     line_ += 1 + breaks_;
     return at;
@@ -143,7 +154,8 @@ void StretchReader::take_text(const Cell& cell, std::size_t column) {
     std::string_view text = cell.text;
     if (cell.doubled) text = without_doubles_ = single_quotes(cell.text);
     text = trimmed(text);
-    if (!is_utf8(text)) return say(column, fmt::format("{} is not UTF-8 text; save the file as UTF-8", in_quotes(text)));
+    if (!is_utf8(text))
+        return say(column, fmt::format("{} is not UTF-8 text; save the file as UTF-8", in_quotes(text)));
     if (!rules_.is_missing_text(text)) table_.texts[static_cast<std::size_t>(uses_[column].text)][row_] = text;
 }
 

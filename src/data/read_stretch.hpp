@@ -1,5 +1,5 @@
-// The cells of one stretch of whole rows, put into the table. Several readers work on one table at once, each on rows of
-// its own. Knows nothing of how the file was cut.
+// The cells of one stretch of whole rows, put into the table. Several readers work on one table at once, each on rows
+// of its own. Knows nothing of how the file was cut.
 #pragma once
 
 #include "data/cells.hpp"

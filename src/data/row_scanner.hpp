@@ -17,7 +17,10 @@ struct RowEnd {
 class RowScanner {
 public:
     RowScanner(const char* begin, const char* end, char delimiter)
-        : end_(end), delimiter_(delimiter), line_feed_(find('\n', begin)), return_(find('\r', begin)),
+        : end_(end),
+          delimiter_(delimiter),
+          line_feed_(find('\n', begin)),
+          return_(find('\r', begin)),
           quote_(find('"', begin)) {}
 
     /// The end of the row that begins at `row`; rows must be asked for in ascending order.

@@ -59,8 +59,8 @@ Survey build_survey(const Study& study, const Table& table) {
 Survey read_survey(const Study& study) {
     const std::string& path = data_name(study);
     if (const std::optional<Fault> trouble = file_trouble(path))
-        throw FaultError(study.fault_at(study.data.file.place,
-                                        fmt::format("data file {}: {}", in_quotes(path), trouble->message), trouble->hint));
+        throw FaultError(study.fault_at(
+            study.data.file.place, fmt::format("data file {}: {}", in_quotes(path), trouble->message), trouble->hint));
     std::future<std::string> hash = std::async(std::launch::async, [&path] { return sha256_hex_of_file(path); });
     Table table = read_delimited(path, {study.data.delimiter, study.data.missing_codes},
                                  [&](const std::vector<std::string>& header) { return survey_columns(study, header); });

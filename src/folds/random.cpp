@@ -11,8 +11,8 @@ std::uint32_t RandomStream::next32() {
     if (used_ == 4) {
         const r123::Philox4x32::key_type key = {
             {static_cast<std::uint32_t>(seed_), static_cast<std::uint32_t>(seed_ >> 32)}};
-        const r123::Philox4x32::ctr_type counter = {{static_cast<std::uint32_t>(block_),
-                                                     static_cast<std::uint32_t>(block_ >> 32), index_, purpose_}};
+        const r123::Philox4x32::ctr_type counter = {
+            {static_cast<std::uint32_t>(block_), static_cast<std::uint32_t>(block_ >> 32), index_, purpose_}};
         const auto out = r123::Philox4x32{}(counter, key);
         words_ = {out[0], out[1], out[2], out[3]};
         ++block_;

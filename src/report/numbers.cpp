@@ -42,9 +42,7 @@ std::string csv_field(std::string_view text) {
     return quoted + '"';
 }
 
-std::string plain(std::string_view text) {
-    return escape_controls(text);
-}
+std::string plain(std::string_view text) { return escape_controls(text); }
 
 std::string markdown_cell(std::string_view text) {
     std::string out;

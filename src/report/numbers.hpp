@@ -12,7 +12,8 @@ std::string exact(double value);
 std::string fixed(double value, int decimals);
 /// p to three decimals, "<.001" below; "-" for NaN.
 std::string p_text(double p);
-/// An RFC 4180 field: quoted where it must be. A text that a spreadsheet would run as a formula (= + - @ tab) gets a leading apostrophe.
+/// An RFC 4180 field: quoted where it must be. A text that a spreadsheet would run as a formula (= + - @ tab) gets a
+/// leading apostrophe.
 std::string csv_field(std::string_view text);
 /// Text safe to print on a terminal and in a Markdown cell: control characters escaped.
 std::string plain(std::string_view text);

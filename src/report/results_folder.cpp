@@ -1,7 +1,7 @@
 #include "rivalfold/report/results_folder.hpp"
 
-#include "rivalfold/report/writers.hpp"
 #include "report/numbers.hpp"
+#include "rivalfold/report/writers.hpp"
 
 #include <fmt/format.h>
 
@@ -49,8 +49,9 @@ void write_file(const fs::path& path, const Outcome& outcome, const ResultFile& 
     if (std::fflush(out.get()) != 0) fail();  // no fsync: a killed process loses nothing, and a power cut may
 }
 
-/// Folders `.<name>.rivalfold-<process>` whose process is gone, or that an earlier process with our number left. An old result that was
-/// set aside (`...old`, see put_in_place) by a process that died before the new one was in place goes back first.
+/// Folders `.<name>.rivalfold-<process>` whose process is gone, or that an earlier process with our number left. An old
+/// result that was set aside (`...old`, see put_in_place) by a process that died before the new one was in place goes
+/// back first.
 void remove_left_overs(const fs::path& parent, const std::string& name) {
     const std::string prefix = "." + name + std::string(kBeside);
     std::error_code ignored;
@@ -71,13 +72,15 @@ void remove_left_overs(const fs::path& parent, const std::string& name) {
 
 void put_in_place(const fs::path& made, const fs::path& place) {
     if (!fs::exists(place)) {
-        if (std::rename(made.c_str(), place.c_str()) != 0) throw SaveError(fmt::format("cannot create {}: {}", place.string(), in_words(errno)));
+        if (std::rename(made.c_str(), place.c_str()) != 0)
+            throw SaveError(fmt::format("cannot create {}: {}", place.string(), in_words(errno)));
         return;
     }
     if (renameat2(AT_FDCWD, made.c_str(), AT_FDCWD, place.c_str(), RENAME_EXCHANGE) != 0) {
         // File systems without an exchange: two steps, the old folder kept under the temporary name in between.
         const fs::path old = made.string() + std::string(kSetAside);
-        if (std::rename(place.c_str(), old.c_str()) != 0) throw SaveError(fmt::format("cannot replace {}: {}", place.string(), in_words(errno)));
+        if (std::rename(place.c_str(), old.c_str()) != 0)
+            throw SaveError(fmt::format("cannot replace {}: {}", place.string(), in_words(errno)));
         if (std::rename(made.c_str(), place.c_str()) != 0) {
             const int error = errno;
             std::rename(old.c_str(), place.c_str());
@@ -96,14 +99,16 @@ fs::path without_final_slash(const std::string& folder) {
     return path.has_filename() ? path : path.parent_path();
 }
 
-/// The first thing in a folder that is not of a results folder: the whole folder is replaced, so nothing else may be in it.
+/// The first thing in a folder that is not of a results folder: the whole folder is replaced, so nothing else may be in
+/// it.
 std::string what_is_no_result(const fs::path& folder) {
     std::vector<std::string> found;
     std::error_code ignored;
     for (const fs::directory_entry& entry : fs::directory_iterator(folder, ignored)) {
         const std::string name = entry.path().filename().string();
         const auto& files = result_files();
-        const bool known = std::any_of(files.begin(), files.end(), [&](const ResultFile& file) { return name == file.name; });
+        const bool known =
+            std::any_of(files.begin(), files.end(), [&](const ResultFile& file) { return name == file.name; });
         if (!known || !fs::is_regular_file(entry.symlink_status(ignored))) found.push_back(name);
     }
     if (!found.empty()) return fmt::format("\"{}\"", plain(*std::min_element(found.begin(), found.end())));
@@ -118,7 +123,8 @@ std::string what_is_no_result(const fs::path& folder) {
 
 std::string default_results_folder(const std::string& study_path) {
     for (const std::string_view ending : {".yaml", ".yml"})
-        if (study_path.size() > ending.size() && study_path.ends_with(ending)) return study_path.substr(0, study_path.size() - ending.size()) + ".results";
+        if (study_path.size() > ending.size() && study_path.ends_with(ending))
+            return study_path.substr(0, study_path.size() - ending.size()) + ".results";
     return study_path + ".results";
 }
 
@@ -126,16 +132,25 @@ void check_results_folder(const std::string& folder) {
     const fs::path place = without_final_slash(folder);
     std::error_code error;
     const fs::path parent = parent_of(place);
-    if (fs::exists(parent, error) && !fs::is_directory(parent, error)) throw SaveError(fmt::format("cannot write {}: {} is a file, not a folder", folder, parent.string()));
-    if (!fs::is_directory(parent, error)) throw SaveError(fmt::format("cannot write {}: the folder {} does not exist", folder, parent.string()));
-    if (access(parent.c_str(), W_OK) != 0) throw SaveError(fmt::format("cannot write {}: no permission to write in {}", folder, parent.string()));
+    if (fs::exists(parent, error) && !fs::is_directory(parent, error))
+        throw SaveError(fmt::format("cannot write {}: {} is a file, not a folder", folder, parent.string()));
+    if (!fs::is_directory(parent, error))
+        throw SaveError(fmt::format("cannot write {}: the folder {} does not exist", folder, parent.string()));
+    if (access(parent.c_str(), W_OK) != 0)
+        throw SaveError(fmt::format("cannot write {}: no permission to write in {}", folder, parent.string()));
     // File systems take names of 255 bytes; the folder that is written beside has a longer one than its place.
-    if (place.filename().string().size() > kLongestName) throw SaveError(fmt::format("cannot write {}: the folder's name is longer than {} bytes", folder, kLongestName));
+    if (place.filename().string().size() > kLongestName)
+        throw SaveError(
+            fmt::format("cannot write {}: the folder's name is longer than {} bytes", folder, kLongestName));
     if (!fs::exists(fs::symlink_status(place, error))) return;
-    if (fs::is_symlink(fs::symlink_status(place, error))) throw SaveError(fmt::format("{} is a symbolic link; name the folder that it points to", folder));
+    if (fs::is_symlink(fs::symlink_status(place, error)))
+        throw SaveError(fmt::format("{} is a symbolic link; name the folder that it points to", folder));
     if (!fs::is_directory(place, error)) throw SaveError(fmt::format("{} is a file; name a folder with -o", folder));
     const std::string stranger = what_is_no_result(place);
-    if (!stranger.empty()) throw SaveError(fmt::format("{} holds {}, which no earlier run wrote; the folder was left alone. Name another folder with -o", folder, stranger));
+    if (!stranger.empty())
+        throw SaveError(fmt::format(
+            "{} holds {}, which no earlier run wrote; the folder was left alone. Name another folder with -o", folder,
+            stranger));
 }
 
 void save_results(const Outcome& outcome, const std::string& folder) {
@@ -146,14 +161,17 @@ void save_results(const Outcome& outcome, const std::string& folder) {
     remove_left_overs(parent, name);
     const fs::path made = parent / fmt::format(".{}{}{}", name, kBeside, getpid());
     std::error_code error;
-    if (!fs::create_directory(made, error)) throw SaveError(fmt::format("cannot create {}: {}", made.string(), error.message()));
+    if (!fs::create_directory(made, error))
+        throw SaveError(fmt::format("cannot create {}: {}", made.string(), error.message()));
     try {
         // The two long files side by side with the rest.
         std::vector<std::exception_ptr> failures(2);
         const auto write_half = [&](std::size_t half) {
             try {
                 for (const ResultFile& file : result_files())
-                    if (!(file.by_segment && outcome.segments.empty()) && (std::string_view(file.name) == "folds.csv") == (half == 1)) write_file(made / file.name, outcome, file);
+                    if (!(file.by_segment && outcome.segments.empty()) &&
+                        (std::string_view(file.name) == "folds.csv") == (half == 1))
+                        write_file(made / file.name, outcome, file);
             } catch (...) {
                 failures[half] = std::current_exception();
             }

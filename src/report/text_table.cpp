@@ -78,11 +78,13 @@ std::string TextTable::render(std::size_t width) const {
     }
     const std::size_t available = width > fixed_part ? width - fixed_part : 0;
     if (text_part > available && text_columns > 0) {
-        // Long names give way, short ones first: what a short column does not need goes to the longer ones. Each keeps at least 8 characters.
+        // Long names give way, short ones first: what a short column does not need goes to the longer ones. Each keeps
+        // at least 8 characters.
         std::vector<std::size_t> shortest_first;
         for (std::size_t c = 0; c < columns_.size(); ++c)
             if (columns_[c].text) shortest_first.push_back(c);
-        std::stable_sort(shortest_first.begin(), shortest_first.end(), [&](std::size_t a, std::size_t b) { return needed[a] < needed[b]; });
+        std::stable_sort(shortest_first.begin(), shortest_first.end(),
+                         [&](std::size_t a, std::size_t b) { return needed[a] < needed[b]; });
         std::size_t left = available, open = text_columns;
         for (const std::size_t c : shortest_first) {
             needed[c] = std::min(needed[c], std::max<std::size_t>(8, left / open));

@@ -12,7 +12,8 @@ namespace rivalfold {
 std::size_t display_width(std::string_view text);
 /// The text cut to a width, with an ellipsis where something was cut.
 std::string cut_to(std::string_view text, std::size_t width);
-/// Words of `text` in lines of at most `width`, each after the first indented by `indent` spaces; a longer word is broken.
+/// Words of `text` in lines of at most `width`, each after the first indented by `indent` spaces; a longer word is
+/// broken.
 std::string wrap(std::string_view text, std::size_t width, std::size_t indent);
 
 class TextTable {

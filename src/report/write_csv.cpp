@@ -1,5 +1,5 @@
-#include "rivalfold/report/writers.hpp"
 #include "report/numbers.hpp"
+#include "rivalfold/report/writers.hpp"
 
 #include <charconv>
 #include <numeric>
@@ -33,14 +33,16 @@ void append(std::string& line, std::size_t value) {
     line.append(text, std::to_chars(text, text + sizeof text, value).ptr);
 }
 
-void put_losses(const Outcome& outcome, const std::vector<std::size_t>& contestants, const std::string& lead, const Sink& sink) {
+void put_losses(const Outcome& outcome, const std::vector<std::size_t>& contestants, const std::string& lead,
+                const Sink& sink) {
     std::string text;
     for (std::size_t i = 0; i < outcome.survey.n(); ++i) {
         text += lead;
         append(text, outcome.survey.rows[i]);
         for (const std::size_t c : contestants) {
             text += ',';
-            if (!outcome.trial.contestants[c].failed) append(text, outcome.trial.contestants[c].row_loss(static_cast<Eigen::Index>(i)));
+            if (!outcome.trial.contestants[c].failed)
+                append(text, outcome.trial.contestants[c].row_loss(static_cast<Eigen::Index>(i)));
         }
         text += '\n';
         if (text.size() < 60000) continue;
@@ -71,8 +73,29 @@ void put_folds(const Outcome& outcome, const std::string& lead, const Sink& sink
 }  // namespace
 
 void write_ranking_csv(const Outcome& outcome, const Sink& sink) {
-    put({"rank", "name", "kind", "loss", "rmse", "mae", "q2", "r2", "adjusted_r2", "sse", "coefficients_count", "aic", "aicc", "bic", "hq", "gm", "bic_weight", "explained", "first_share", "p_set_range", "p_set_max",
-         "verdict"}, sink);
+    put({"rank",
+         "name",
+         "kind",
+         "loss",
+         "rmse",
+         "mae",
+         "q2",
+         "r2",
+         "adjusted_r2",
+         "sse",
+         "coefficients_count",
+         "aic",
+         "aicc",
+         "bic",
+         "hq",
+         "gm",
+         "bic_weight",
+         "explained",
+         "first_share",
+         "p_set_range",
+         "p_set_max",
+         "verdict"},
+        sink);
     for (const std::size_t c : table_order(outcome)) {
         const ContestantLosses& losses = outcome.trial.contestants[c];
         Cells cells;
@@ -83,12 +106,14 @@ void write_ranking_csv(const Outcome& outcome, const Sink& sink) {
         cells.push_back(theory ? "theory" : "benchmark");
         for (const double value : {losses.loss, losses.rmse, losses.mae, losses.q2}) cells.push_back(held(value));
         if (theory) {
-            for (const double value : {theory->fitted.r2, theory->fitted.adjusted_r2, theory->fitted.sse}) cells.push_back(exact(value));
+            for (const double value : {theory->fitted.r2, theory->fitted.adjusted_r2, theory->fitted.sse})
+                cells.push_back(exact(value));
             cells.push_back(std::to_string(theory->fitted.coefficients));
             const Criteria& k = theory->criteria;
             for (const double value : {k.aic, k.aicc, k.bic, k.hq, k.gm, k.bic_weight}) cells.push_back(exact(value));
             cells.push_back(exact(theory->explained));
-            for (const double value : {theory->first_share, theory->p_set_range, theory->p_set_max}) cells.push_back(held(value));
+            for (const double value : {theory->first_share, theory->p_set_range, theory->p_set_max})
+                cells.push_back(held(value));
             cells.push_back(csv_field(theory->verdict));
         } else {
             cells.resize(22);
@@ -100,14 +125,19 @@ void write_ranking_csv(const Outcome& outcome, const Sink& sink) {
 void write_pairs_csv(const Outcome& outcome, const Sink& sink) {
     Cells header{"a", "b", "difference", "relative"};
     for (const char* test : {"rows", "corrected"})
-        for (const char* field : {"se", "t", "df", "p", "p_holm", "low", "high"}) header.push_back(std::string(test) + "_" + field);
-    header.insert(header.end(), {"p", "p_holm", "low", "high", "monte_carlo_se", "a_knows_more_p", "b_knows_more_p", "inner", "extra_terms_p", "verdict", "reason"});
+        for (const char* field : {"se", "t", "df", "p", "p_holm", "low", "high"})
+            header.push_back(std::string(test) + "_" + field);
+    header.insert(header.end(), {"p", "p_holm", "low", "high", "monte_carlo_se", "a_knows_more_p", "b_knows_more_p",
+                                 "inner", "extra_terms_p", "verdict", "reason"});
     put(header, sink);
     for (const PairReport& pair : outcome.verdict.pairs) {
-        Cells cells{csv_field(outcome.trial.contestants[pair.a].name), csv_field(outcome.trial.contestants[pair.b].name), exact(pair.difference), exact(pair.relative)};
+        Cells cells{csv_field(outcome.trial.contestants[pair.a].name),
+                    csv_field(outcome.trial.contestants[pair.b].name), exact(pair.difference), exact(pair.relative)};
         for (const PairedTest* test : {&pair.rows, &pair.corrected})
-            for (const double value : {test->se, test->t, test->df, test->p, test->p_holm, test->low, test->high}) cells.push_back(exact(value));
-        for (const double value : {pair.p, pair.p_holm, pair.low, pair.high, pair.monte_carlo_se}) cells.push_back(exact(value));
+            for (const double value : {test->se, test->t, test->df, test->p, test->p_holm, test->low, test->high})
+                cells.push_back(exact(value));
+        for (const double value : {pair.p, pair.p_holm, pair.low, pair.high, pair.monte_carlo_se})
+            cells.push_back(exact(value));
         cells.push_back(pair.theories ? exact(pair.a_knows_more.p) : "");
         cells.push_back(pair.theories ? exact(pair.b_knows_more.p) : "");
         cells.push_back(pair.inner ? csv_field(outcome.trial.contestants[*pair.inner].name) : "");
@@ -122,7 +152,9 @@ void write_indicators_csv(const Outcome& outcome, const Sink& sink) {
     put({"contestant", "name", "rmse", "mae", "mape", "q2"}, sink);
     for (const std::size_t c : outcome.verdict.order)
         for (const IndicatorErrors& errors : outcome.trial.contestants[c].indicators)
-            put({csv_field(outcome.trial.contestants[c].name), csv_field(errors.name), exact(errors.rmse), exact(errors.mae), exact(errors.mape), exact(errors.q2)}, sink);
+            put({csv_field(outcome.trial.contestants[c].name), csv_field(errors.name), exact(errors.rmse),
+                 exact(errors.mae), exact(errors.mape), exact(errors.q2)},
+                sink);
 }
 
 void write_losses_csv(const Outcome& outcome, const Sink& sink) {
@@ -133,13 +165,15 @@ void write_losses_csv(const Outcome& outcome, const Sink& sink) {
 }
 
 void write_segment_losses_csv(const Outcome& outcome, const Sink& sink) {
-    // One set of columns for all segments: contestants in the study's order; a theory that failed in a segment has empty cells there.
+    // One set of columns for all segments: contestants in the study's order; a theory that failed in a segment has
+    // empty cells there.
     std::vector<std::size_t> all(outcome.trial.contestants.size());
     std::iota(all.begin(), all.end(), std::size_t{0});
     std::string text = "segment,row";
     for (const std::size_t c : all) text += "," + csv_field(outcome.trial.contestants[c].name);
     sink(text + "\n");
-    for (const Outcome& segment : outcome.segments) put_losses(segment, all, csv_field(segment.segment_name) + ",", sink);
+    for (const Outcome& segment : outcome.segments)
+        put_losses(segment, all, csv_field(segment.segment_name) + ",", sink);
 }
 
 void write_folds_csv(const Outcome& outcome, const Sink& sink) {
@@ -156,7 +190,9 @@ void write_disagreements_csv(const Outcome& outcome, const Sink& sink) {
     const Disagreement& d = outcome.verdict.disagreement;
     std::string text = "row,actual";
     if (!d.present) return sink(text + "\n");
-    const auto column = [&](const char* what, std::size_t c) { text += "," + csv_field(std::string(what) + outcome.trial.contestants[c].name); };
+    const auto column = [&](const char* what, std::size_t c) {
+        text += "," + csv_field(std::string(what) + outcome.trial.contestants[c].name);
+    };
     for (const char* what : {"predicted: ", "loss: "})
         for (const std::size_t c : {d.first, d.second}) column(what, c);
     text += ",difference";
@@ -164,9 +200,11 @@ void write_disagreements_csv(const Outcome& outcome, const Sink& sink) {
     text += "\n";
     for (std::size_t k = 0; k < d.rows.size(); ++k) {
         const auto i = static_cast<Eigen::Index>(k), row = static_cast<Eigen::Index>(d.rows[k]);
-        const double loss_first = outcome.trial.contestants[d.first].row_loss(row), loss_second = outcome.trial.contestants[d.second].row_loss(row);
+        const double loss_first = outcome.trial.contestants[d.first].row_loss(row),
+                     loss_second = outcome.trial.contestants[d.second].row_loss(row);
         append(text, outcome.survey.rows[d.rows[k]]);
-        for (const double value : {d.actual(i), d.predicted_first(i), d.predicted_second(i), loss_first, loss_second, loss_first - loss_second}) {
+        for (const double value : {d.actual(i), d.predicted_first(i), d.predicted_second(i), loss_first, loss_second,
+                                   loss_first - loss_second}) {
             text += ',';
             append(text, value);
         }
@@ -185,11 +223,18 @@ void write_disagreements_csv(const Outcome& outcome, const Sink& sink) {
 void write_study_yaml(const Outcome& outcome, const Sink& sink) { sink(outcome.study.source); }
 
 const std::vector<ResultFile>& result_files() {
-    static const std::vector<ResultFile> files = {
-        {"results.json", write_results_json}, {"ranking.csv", write_ranking_csv}, {"pairs.csv", write_pairs_csv},
-        {"indicators.csv", write_indicators_csv}, {"losses.csv", write_losses_csv}, {"folds.csv", write_folds_csv}, {"segment_losses.csv", write_segment_losses_csv, true},
-        {"segment_folds.csv", write_segment_folds_csv, true}, {"disagreements.csv", write_disagreements_csv},
-        {"table.md", write_table_md}, {"study.yaml", write_study_yaml}, {"manifest.json", write_manifest_json}};
+    static const std::vector<ResultFile> files = {{"results.json", write_results_json},
+                                                  {"ranking.csv", write_ranking_csv},
+                                                  {"pairs.csv", write_pairs_csv},
+                                                  {"indicators.csv", write_indicators_csv},
+                                                  {"losses.csv", write_losses_csv},
+                                                  {"folds.csv", write_folds_csv},
+                                                  {"segment_losses.csv", write_segment_losses_csv, true},
+                                                  {"segment_folds.csv", write_segment_folds_csv, true},
+                                                  {"disagreements.csv", write_disagreements_csv},
+                                                  {"table.md", write_table_md},
+                                                  {"study.yaml", write_study_yaml},
+                                                  {"manifest.json", write_manifest_json}};
     return files;
 }
 

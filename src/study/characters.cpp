@@ -1,8 +1,8 @@
 #include "study/characters.hpp"
 
+#include <fmt/format.h>
 #include <algorithm>
 #include <array>
-#include <fmt/format.h>
 
 namespace rivalfold {
 namespace {

@@ -3,8 +3,8 @@
 #include "study/find_cycle.hpp"
 #include "study/sections.hpp"
 
-#include <algorithm>
 #include <fmt/format.h>
+#include <algorithm>
 #include <unordered_map>
 #include <unordered_set>
 #include <utility>

@@ -1,7 +1,7 @@
 #include "study/fault_list.hpp"
 
-#include <algorithm>
 #include <fmt/format.h>
+#include <algorithm>
 #include <tuple>
 
 namespace rivalfold {

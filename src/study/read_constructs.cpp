@@ -3,9 +3,9 @@
 #include "study/sections.hpp"
 #include "study/values.hpp"
 
+#include <fmt/format.h>
 #include <algorithm>
 #include <array>
-#include <fmt/format.h>
 #include <utility>
 
 namespace rivalfold {

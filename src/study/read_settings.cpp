@@ -3,10 +3,10 @@
 #include "study/sections.hpp"
 #include "study/values.hpp"
 
+#include <fmt/format.h>
 #include <algorithm>
 #include <array>
 #include <filesystem>
-#include <fmt/format.h>
 #include <limits>
 #include <utility>
 
@@ -106,8 +106,7 @@ std::vector<double> read_cuts(const Node& node, const std::string& label, FaultL
         const auto cut = read_decimal(item, "an item of " + label, "a number", faults);
         if (!cut) continue;
         if (!cuts.empty() && *cut <= cuts.back())
-            faults.add(item.place,
-                       fmt::format("{} must ascend, found {} after {}", label, item.text, cuts.back()));
+            faults.add(item.place, fmt::format("{} must ascend, found {} after {}", label, item.text, cuts.back()));
         cuts.push_back(*cut + 0.0);  // -0 is 0
     }
     return cuts;

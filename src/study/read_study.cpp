@@ -3,10 +3,10 @@
 #include "study/sections.hpp"
 #include "study/values.hpp"
 
+#include <fmt/format.h>
 #include <array>
 #include <cerrno>
 #include <filesystem>
-#include <fmt/format.h>
 #include <fstream>
 #include <system_error>
 #include <utility>

@@ -3,9 +3,9 @@
 #include "study/sections.hpp"
 #include "study/values.hpp"
 
+#include <fmt/format.h>
 #include <algorithm>
 #include <bit>
-#include <fmt/format.h>
 #include <unordered_map>
 #include <utility>
 

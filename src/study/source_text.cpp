@@ -2,8 +2,8 @@
 
 #include "study/characters.hpp"
 
-#include <algorithm>
 #include <fmt/format.h>
+#include <algorithm>
 
 namespace rivalfold {
 namespace {

@@ -26,10 +26,14 @@ std::string joined_members(const Term& term, std::string_view link) {
 
 const char* word(Weights weights) {
     switch (weights) {
-        case Weights::mode_a: return "mode_a";
-        case Weights::mode_b: return "mode_b";
-        case Weights::equal: return "equal";
-        case Weights::principal: return "principal";
+        case Weights::mode_a:
+            return "mode_a";
+        case Weights::mode_b:
+            return "mode_b";
+        case Weights::equal:
+            return "equal";
+        case Weights::principal:
+            return "principal";
     }
     return "";
 }
@@ -44,12 +48,18 @@ const char* word(Mediators mediators) { return mediators == Mediators::measured 
 
 const char* word(TermKind kind) {
     switch (kind) {
-        case TermKind::score: return "name";
-        case TermKind::product: return "product";
-        case TermKind::minimum: return "minimum";
-        case TermKind::maximum: return "maximum";
-        case TermKind::square: return "square";
-        case TermKind::geometric_mean: return "geometric_mean";
+        case TermKind::score:
+            return "name";
+        case TermKind::product:
+            return "product";
+        case TermKind::minimum:
+            return "minimum";
+        case TermKind::maximum:
+            return "maximum";
+        case TermKind::square:
+            return "square";
+        case TermKind::geometric_mean:
+            return "geometric_mean";
     }
     return "";
 }

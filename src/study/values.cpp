@@ -2,10 +2,10 @@
 
 #include "study/characters.hpp"
 
+#include <fmt/format.h>
 #include <algorithm>
 #include <charconv>
 #include <cmath>
-#include <fmt/format.h>
 #include <limits>
 #include <unordered_map>
 #include <utility>
@@ -26,9 +26,12 @@ struct Group {
 
 // Where a key that stands in the wrong place belongs; empty if nowhere or in several places.
 std::string belongs_under(std::string_view name) {
-    const Group groups[] = {{kStudyKeys, "the study itself"}, {kDataKeys, "\"data\""},
-                            {kConstructKeys, "a construct"},  {kTheoryKeys, "a theory"},
-                            {kTrialKeys, "\"trial\""},        {kVerdictKeys, "\"verdict\""},
+    const Group groups[] = {{kStudyKeys, "the study itself"},
+                            {kDataKeys, "\"data\""},
+                            {kConstructKeys, "a construct"},
+                            {kTheoryKeys, "a theory"},
+                            {kTrialKeys, "\"trial\""},
+                            {kVerdictKeys, "\"verdict\""},
                             {kSegmentKeys, "\"segment\" of \"data\""}};
     std::string_view owner;
     for (const Group& group : groups) {
@@ -107,9 +110,12 @@ std::string found(const Node& node) {
     switch (node.kind) {
         case Node::Kind::nothing:
             return node.text.empty() ? "nothing" : in_quotes(node.text) + ", which means nothing in YAML";
-        case Node::Kind::text: return node.quoted ? "the quoted text " + in_quotes(node.text) : in_quotes(node.text);
-        case Node::Kind::list: return node.items.empty() ? "an empty list" : "a list";
-        case Node::Kind::map: return node.items.empty() ? "no keys" : "keys with values";
+        case Node::Kind::text:
+            return node.quoted ? "the quoted text " + in_quotes(node.text) : in_quotes(node.text);
+        case Node::Kind::list:
+            return node.items.empty() ? "an empty list" : "a list";
+        case Node::Kind::map:
+            return node.items.empty() ? "no keys" : "keys with values";
     }
     return "nothing";
 }

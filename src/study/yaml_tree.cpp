@@ -3,14 +3,14 @@
 #include "study/characters.hpp"
 #include "study/yaml_syntax.hpp"
 
-#include <algorithm>
 #include <fmt/format.h>
-#include <sstream>
-#include <unordered_map>
-#include <utility>
 #include <yaml-cpp/eventhandler.h>
 #include <yaml-cpp/exceptions.h>
 #include <yaml-cpp/parser.h>
+#include <algorithm>
+#include <sstream>
+#include <unordered_map>
+#include <utility>
 
 namespace rivalfold {
 namespace {

@@ -5,15 +5,18 @@ namespace rivalfold {
 
 void TrainingMean::fit_moments(const Moments& moments, FitScratch&, Fit& fit) const {
     fit.offset.resize(static_cast<Eigen::Index>(target_columns_.size()));
-    for (std::size_t j = 0; j < target_columns_.size(); ++j) fit.offset(static_cast<Eigen::Index>(j)) = moments.mean(target_columns_[j]);
+    for (std::size_t j = 0; j < target_columns_.size(); ++j)
+        fit.offset(static_cast<Eigen::Index>(j)) = moments.mean(target_columns_[j]);
     fit.status = FitStatus::fitted;
 }
 
-void TrainingMean::predict(const Fit& fit, const RowBlock& rows, RowScratch&, double* out, std::ptrdiff_t stride) const {
+void TrainingMean::predict(const Fit& fit, const RowBlock& rows, RowScratch&, double* out,
+                           std::ptrdiff_t stride) const {
     for (Eigen::Index j = 0; j < fit.offset.size(); ++j) fill(out + j * stride, rows.rows, fit.offset(j));
 }
 
-LinearBenchmark::LinearBenchmark(const Sample& sample, std::vector<int> target_columns, std::vector<int> predictor_columns)
+LinearBenchmark::LinearBenchmark(const Sample& sample, std::vector<int> target_columns,
+                                 std::vector<int> predictor_columns)
     : sample_(sample), target_columns_(std::move(target_columns)), predictors_(std::move(predictor_columns)) {}
 
 void LinearBenchmark::fit_moments(const Moments& moments, FitScratch&, Fit& fit) const {
@@ -40,7 +43,8 @@ void LinearBenchmark::fit_moments(const Moments& moments, FitScratch&, Fit& fit)
             const int other = out.active[static_cast<std::size_t>(b)];
             sums.xx(a, b) = moments.ss(column, other) / (unit(column) * unit(other));
         }
-        for (Eigen::Index j = 0; j < q; ++j) sums.xy(a, j) = moments.ss(column, target_columns_[static_cast<std::size_t>(j)]) / unit(column);
+        for (Eigen::Index j = 0; j < q; ++j)
+            sums.xy(a, j) = moments.ss(column, target_columns_[static_cast<std::size_t>(j)]) / unit(column);
     }
     for (Eigen::Index j = 0; j < q; ++j) {
         const int column = target_columns_[static_cast<std::size_t>(j)];
@@ -61,7 +65,8 @@ void LinearBenchmark::fit_moments(const Moments& moments, FitScratch&, Fit& fit)
     fit.status = FitStatus::fitted;
 }
 
-void LinearBenchmark::predict(const Fit& fit, const RowBlock& rows, RowScratch&, double* out, std::ptrdiff_t stride) const {
+void LinearBenchmark::predict(const Fit& fit, const RowBlock& rows, RowScratch&, double* out,
+                              std::ptrdiff_t stride) const {
     const std::vector<int>& active = fit.equations.front().active;
     for (Eigen::Index j = 0; j < fit.offset.size(); ++j) {
         double* predicted = out + j * stride;
@@ -70,7 +75,8 @@ void LinearBenchmark::predict(const Fit& fit, const RowBlock& rows, RowScratch&,
             const double slope = fit.per_indicator(static_cast<Eigen::Index>(a), j);
             add_scaled(predicted, rows.values + active[a] * rows.stride, rows.rows, slope);
             const int gap = sample_.gap_of[static_cast<std::size_t>(active[a])];
-            if (gap >= 0) add_scaled(predicted, rows.gaps + gap * rows.stride, rows.rows, slope * fit.gap_means(active[a]));
+            if (gap >= 0)
+                add_scaled(predicted, rows.gaps + gap * rows.stride, rows.rows, slope * fit.gap_means(active[a]));
         }
     }
 }

@@ -49,13 +49,17 @@ private:
         if (!measurement) throw std::logic_error("construct without measurement: " + construct);
         std::vector<int> made;
         if (measurement->category < 0) {
-            made.push_back(add({construct, construct, measurement->variables, measurement->weights, -1, measurement_key(*measurement)}));
+            made.push_back(add({construct, construct, measurement->variables, measurement->weights, -1,
+                                measurement_key(*measurement)}));
         } else {
             const Category& category = survey_.categories[static_cast<std::size_t>(measurement->category)];
             const LevelColumns& span = sample_.categories[static_cast<std::size_t>(measurement->category)];
             for (int level = 0; level < span.n_levels; ++level)
-                made.push_back(add({fmt::format("{}={}", construct, category.levels[static_cast<std::size_t>(level)]), construct,
-                                    {span.first + level}, Weights::equal, measurement->category,
+                made.push_back(add({fmt::format("{}={}", construct, category.levels[static_cast<std::size_t>(level)]),
+                                    construct,
+                                    {span.first + level},
+                                    Weights::equal,
+                                    measurement->category,
                                     fmt::format("level {}", span.first + level)}));
         }
         return blocks_.emplace(construct, std::move(made)).first->second;
@@ -75,7 +79,8 @@ private:
         for (const DesignColumn& column : result.columns) {
             if (column.kind != TermKind::score) result.linear = false;
             for (const int block : column.blocks)
-                if (std::find(result.predecessors.begin(), result.predecessors.end(), block) == result.predecessors.end())
+                if (std::find(result.predecessors.begin(), result.predecessors.end(), block) ==
+                    result.predecessors.end())
                     result.predecessors.push_back(block);
         }
         return result;
@@ -96,10 +101,14 @@ private:
     /// One column per combination of the members' blocks, the last member's level running fastest.
     void add_columns(const Term& term, int number, EquationPlan& equation) {
         std::size_t count = 1;
-        for (const Name& member : term.members) count *= blocks_of(member.text).size();  // at most 50^8, far below overflow
+        for (const Name& member : term.members)
+            count *= blocks_of(member.text).size();  // at most 50^8, far below overflow
         if (count > kMostColumns)
-            throw FaultError(study_.fault_at(term.place, fmt::format("{} makes {} columns, one for each combination of levels; at most {} are possible",
-                                                                     describe(term), count, kMostColumns), "merge levels, or leave out a category"));
+            throw FaultError(study_.fault_at(
+                term.place,
+                fmt::format("{} makes {} columns, one for each combination of levels; at most {} are possible",
+                            describe(term), count, kMostColumns),
+                "merge levels, or leave out a category"));
         std::vector<std::vector<int>> combinations(1);
         for (const Name& member : term.members) {
             std::vector<std::vector<int>> longer;
@@ -133,7 +142,9 @@ private:
     void sort_antecedents_first(std::vector<EquationPlan> equations) {
         std::vector<int> position(equations.size(), -1);
         const auto outcome_is = [&](int block) {
-            return std::find_if(equations.begin(), equations.end(), [&](const EquationPlan& e) { return e.outcome == block; }) - equations.begin();
+            return std::find_if(equations.begin(), equations.end(),
+                                [&](const EquationPlan& e) { return e.outcome == block; }) -
+                   equations.begin();
         };
         for (std::size_t done = 0; done < equations.size();) {
             const std::size_t before = done;
@@ -187,21 +198,24 @@ int Blueprint::equation_of(int block) const {
 
 std::vector<Blueprint> build_blueprints(const Study& study, const Survey& survey, const Sample& sample) {
     std::vector<Blueprint> blueprints;
-    for (std::size_t t = 0; t < study.theories.size(); ++t) blueprints.push_back(Builder(study, survey, sample, t).build());
+    for (std::size_t t = 0; t < study.theories.size(); ++t)
+        blueprints.push_back(Builder(study, survey, sample, t).build());
     return blueprints;
 }
 
 std::vector<int> benchmark_columns(const std::vector<Blueprint>& blueprints, const Survey& survey) {
     std::set<std::string> taken;
     const auto n_variables = static_cast<int>(survey.variables.size());
-    for (const int column : blueprints.front().target_columns()) taken.insert(survey.variables[static_cast<std::size_t>(column)].column);
+    for (const int column : blueprints.front().target_columns())
+        taken.insert(survey.variables[static_cast<std::size_t>(column)].column);
     std::set<int> levels;
     std::vector<int> result;
     for (const Blueprint& blueprint : blueprints)
         for (const Block& block : blueprint.blocks)
             for (const int column : block.columns) {
-                const bool fresh = column >= n_variables ? levels.insert(column).second
-                                                         : taken.insert(survey.variables[static_cast<std::size_t>(column)].column).second;
+                const bool fresh = column >= n_variables
+                                       ? levels.insert(column).second
+                                       : taken.insert(survey.variables[static_cast<std::size_t>(column)].column).second;
                 if (fresh) result.push_back(column);
             }
     return result;

@@ -4,7 +4,8 @@
 #include <cstring>
 
 // One source, two machine codes, chosen when the program is loaded. Sanitizers cannot follow that choice.
-#if defined(__x86_64__) && defined(__GNUC__) && !defined(__SANITIZE_ADDRESS__) && !defined(__SANITIZE_THREAD__) && !defined(__AVX2__)
+#if defined(__x86_64__) && defined(__GNUC__) && !defined(__SANITIZE_ADDRESS__) && !defined(__SANITIZE_THREAD__) && \
+    !defined(__AVX2__)
 #if defined(__clang__)
 #define RIVALFOLD_TWO_CODES
 #else
@@ -19,13 +20,18 @@ namespace {
 
 using Lanes = double __attribute__((vector_size(32)));
 
-inline __attribute__((always_inline)) void load(Lanes& lanes, const double* from) { std::memcpy(&lanes, from, sizeof lanes); }
-inline __attribute__((always_inline)) double total(const Lanes& lanes) { return (lanes[0] + lanes[1]) + (lanes[2] + lanes[3]); }
+inline __attribute__((always_inline)) void load(Lanes& lanes, const double* from) {
+    std::memcpy(&lanes, from, sizeof lanes);
+}
+inline __attribute__((always_inline)) double total(const Lanes& lanes) {
+    return (lanes[0] + lanes[1]) + (lanes[2] + lanes[3]);
+}
 
 }  // namespace
 
 RIVALFOLD_TWO_CODES
-void add_gram(const double* x, std::ptrdiff_t stride, std::ptrdiff_t rows, std::ptrdiff_t m, double* gram, std::ptrdiff_t gram_stride) {
+void add_gram(const double* x, std::ptrdiff_t stride, std::ptrdiff_t rows, std::ptrdiff_t m, double* gram,
+              std::ptrdiff_t gram_stride) {
     std::ptrdiff_t j = 0;
     for (; j + 1 < m; j += 2) {
         const double* a0 = x + j * stride;
@@ -87,7 +93,7 @@ void add_scaled(double* __restrict out, const double* __restrict x, std::ptrdiff
 
 RIVALFOLD_TWO_CODES
 void add_scaled_4(double* __restrict out, const double* const x[4], std::ptrdiff_t n, const double factor[4]) {
-    const double *__restrict a = x[0], *__restrict b = x[1], *__restrict c = x[2], *__restrict d = x[3];
+    const double* __restrict a = x[0], * __restrict b = x[1], * __restrict c = x[2], * __restrict d = x[3];
     const double fa = factor[0], fb = factor[1], fc = factor[2], fd = factor[3];
     for (std::ptrdiff_t i = 0; i < n; ++i) out[i] = out[i] + fa * a[i] + fb * b[i] + fc * c[i] + fd * d[i];
 }
@@ -108,8 +114,9 @@ void keep_larger(double* __restrict out, const double* __restrict x, std::ptrdif
 }
 
 RIVALFOLD_TWO_CODES
-void add_errors(const double* __restrict actual, const double* __restrict predicted, const double* __restrict inverse_actual, std::ptrdiff_t n,
-                double one_over_unit, double* __restrict row_squared, double* __restrict row_absolute, ErrorSums& sums) {
+void add_errors(const double* __restrict actual, const double* __restrict predicted,
+                const double* __restrict inverse_actual, std::ptrdiff_t n, double one_over_unit,
+                double* __restrict row_squared, double* __restrict row_absolute, ErrorSums& sums) {
     Lanes squared{}, absolute{}, proportional{};
     std::ptrdiff_t i = 0;
     for (; i + kLanes <= n; i += kLanes)

@@ -44,7 +44,8 @@ Sample build_sample(const Survey& survey) {
         }
         const double centre = observed > 0 ? sum / static_cast<double>(observed) : 0;
         sample.centre(v) = centre;
-        for (Eigen::Index i = 0; i < sample.n; ++i) sample.values(i, v) = std::isnan(column(i)) ? 0 : column(i) - centre;
+        for (Eigen::Index i = 0; i < sample.n; ++i)
+            sample.values(i, v) = std::isnan(column(i)) ? 0 : column(i) - centre;
         if (observed == sample.n) continue;
         sample.gap_of[static_cast<std::size_t>(v)] = static_cast<int>(sample.gappy.size());
         sample.gappy.push_back(v);
@@ -71,8 +72,12 @@ void moments_by_downdating(const Sample& sample, const Gram& whole, const Gram& 
     out.n = whole(p, p) - held_out(p, p);
     suspect = false;
     // Position in the Gram of the count of column h's observed cells.
-    const auto mask = [&](int h) { return sample.gap_of[static_cast<std::size_t>(h)] < 0 ? p : p + 1 + sample.gap_of[static_cast<std::size_t>(h)]; };
-    const auto kept = [&](int a, int b) { return a >= b ? whole(a, b) - held_out(a, b) : whole(b, a) - held_out(b, a); };
+    const auto mask = [&](int h) {
+        return sample.gap_of[static_cast<std::size_t>(h)] < 0 ? p : p + 1 + sample.gap_of[static_cast<std::size_t>(h)];
+    };
+    const auto kept = [&](int a, int b) {
+        return a >= b ? whole(a, b) - held_out(a, b) : whole(b, a) - held_out(b, a);
+    };
     for (int h = 0; h < p; ++h) {
         const double observed = kept(mask(h), mask(h));
         if (observed <= 0) {  // only a gappy variable can lose all its cells
@@ -88,7 +93,8 @@ void moments_by_downdating(const Sample& sample, const Gram& whole, const Gram& 
             if (complete)
                 value -= out.n * out.mean(h) * out.mean(k);
             else
-                value += -out.mean(h) * kept(mask(h), k) - out.mean(k) * kept(h, mask(k)) + out.mean(h) * out.mean(k) * kept(mask(h), mask(k));
+                value += -out.mean(h) * kept(mask(h), k) - out.mean(k) * kept(h, mask(k)) +
+                         out.mean(h) * out.mean(k) * kept(mask(h), mask(k));
             out.ss(h, k) = value;
             out.ss(k, h) = value;
         }

@@ -22,12 +22,14 @@ struct TheoryScratch final : FitScratch {
 };
 
 void make_room(Eigen::MatrixXd& room, std::ptrdiff_t rows, Eigen::Index columns) {
-    if (room.rows() < rows || room.cols() < columns) room.resize(std::max<Eigen::Index>(room.rows(), rows), std::max(room.cols(), columns));
+    if (room.rows() < rows || room.cols() < columns)
+        room.resize(std::max<Eigen::Index>(room.rows(), rows), std::max(room.cols(), columns));
 }
 
 }  // namespace
 
-TheoryContestant::TheoryContestant(const Sample& sample, Blueprint blueprint, bool everything) : sample_(sample), plan_(std::move(blueprint)) {
+TheoryContestant::TheoryContestant(const Sample& sample, Blueprint blueprint, bool everything)
+    : sample_(sample), plan_(std::move(blueprint)) {
     for (std::size_t e = 0; e < plan_.equations.size(); ++e) {
         EquationPlan& equation = plan_.equations[e];
         if (everything) equation.needed = true;
@@ -39,7 +41,8 @@ TheoryContestant::TheoryContestant(const Sample& sample, Blueprint blueprint, bo
     for (const EquationPlan& equation : plan_.equations)
         for (const int block : equation.predecessors)
             for (const int column : plan_.blocks[static_cast<std::size_t>(block)].columns)
-                if (equation.needed && std::find(direct_columns_.begin(), direct_columns_.end(), column) == direct_columns_.end())
+                if (equation.needed &&
+                    std::find(direct_columns_.begin(), direct_columns_.end(), column) == direct_columns_.end())
                     direct_columns_.push_back(column);
     std::sort(direct_columns_.begin(), direct_columns_.end());
 }
@@ -47,7 +50,9 @@ TheoryContestant::TheoryContestant(const Sample& sample, Blueprint blueprint, bo
 std::unique_ptr<FitScratch> TheoryContestant::make_scratch() const { return std::make_unique<TheoryScratch>(plan_); }
 
 int TheoryContestant::design_columns(int design) const {
-    return static_cast<int>(plan_.equations[static_cast<std::size_t>(designs_[static_cast<std::size_t>(design)])].columns.size()) + 1;
+    return static_cast<int>(
+               plan_.equations[static_cast<std::size_t>(designs_[static_cast<std::size_t>(design)])].columns.size()) +
+           1;
 }
 
 void TheoryContestant::set_shifts(const Fit& whole) {
@@ -111,8 +116,11 @@ bool TheoryContestant::map_scores(const Moments& moments, Fit& fit) const {
         }
         if (plan_.metric == Metric::standard) continue;
         if (least < 0 && most > 0) {
-            fit.fail(fmt::format("metric: response needs indicator weights of one sign, but those of \"{}\" differ in sign; reverse or drop an "
-                                 "indicator, or use weights: equal", block.construct));
+            fit.fail(
+                fmt::format("metric: response needs indicator weights of one sign, but those of \"{}\" differ in sign; "
+                            "reverse or drop an "
+                            "indicator, or use weights: equal",
+                            block.construct));
             return false;
         }
         score.coefficients /= sum;
@@ -131,7 +139,8 @@ void TheoryContestant::choose_active(const EquationPlan& equation, const Fit& fi
     out.active.clear();
     for (std::size_t c = 0; c < equation.columns.size(); ++c) {
         const std::vector<int>& blocks = equation.columns[c].blocks;
-        if (std::all_of(blocks.begin(), blocks.end(), [&](int block) { return fit.scores[static_cast<std::size_t>(block)].active; }))
+        if (std::all_of(blocks.begin(), blocks.end(),
+                        [&](int block) { return fit.scores[static_cast<std::size_t>(block)].active; }))
             out.active.push_back(static_cast<int>(c));
     }
 }
@@ -147,7 +156,9 @@ void TheoryContestant::solve_linear(std::size_t equation, double n, Fit& fit) co
     sums.xx.resize(c, c);
     sums.xy.resize(c, 1);
     sums.yy.resize(1);
-    const auto block_of = [&](Eigen::Index a) { return plan.columns[static_cast<std::size_t>(out.active[static_cast<std::size_t>(a)])].blocks.front(); };
+    const auto block_of = [&](Eigen::Index a) {
+        return plan.columns[static_cast<std::size_t>(out.active[static_cast<std::size_t>(a)])].blocks.front();
+    };
     const auto sd = [&](int block) { return fit.scores[static_cast<std::size_t>(block)].sd; };
     for (Eigen::Index a = 0; a < c; ++a) {
         const int block = block_of(a);
@@ -197,8 +208,10 @@ void TheoryContestant::fit_design(int design, const Eigen::MatrixXd& gram, Fit& 
         std::string term = "a term";
         for (const DesignColumn& column : plan.columns)
             if (column.kind == TermKind::geometric_mean) term = column.label;
-        return fit.fail(fmt::format("{} has no value in some training row: a score there is zero or negative; use minimum or product, or items "
-                                    "that start at 1", term));
+        return fit.fail(fmt::format(
+            "{} has no value in some training row: a score there is zero or negative; use minimum or product, or items "
+            "that start at 1",
+            term));
     }
     accept(equation, fit);
 }
@@ -208,7 +221,8 @@ void TheoryContestant::accept(std::size_t equation, Fit& fit) const {
     out.solution.solve(out.sums);
     if (!out.solution.full_rank()) fit.rank_deficient = true;
     out.slopes.setZero(static_cast<Eigen::Index>(plan_.equations[equation].columns.size()));
-    for (std::size_t a = 0; a < out.active.size(); ++a) out.slopes(out.active[a]) = out.solution.slopes()(static_cast<Eigen::Index>(a), 0);
+    for (std::size_t a = 0; a < out.active.size(); ++a)
+        out.slopes(out.active[a]) = out.solution.slopes()(static_cast<Eigen::Index>(a), 0);
     out.intercept = out.solution.intercept()(0);
 }
 
@@ -253,7 +267,8 @@ void TheoryContestant::finish(FitScratch& scratch, Fit& fit) const {
 
 /// out += sum over `columns` of factor(h) x column, gaps filled with the training mean.
 template <class Factor>
-void TheoryContestant::add_columns(const RowBlock& rows, const std::vector<int>& columns, const Eigen::VectorXd& gap_means, Factor factor, double* out) const {
+void TheoryContestant::add_columns(const RowBlock& rows, const std::vector<int>& columns,
+                                   const Eigen::VectorXd& gap_means, Factor factor, double* out) const {
     std::size_t h = 0;
     for (; h + 4 <= columns.size(); h += 4) {
         const double* x[4];
@@ -275,11 +290,13 @@ void TheoryContestant::form_score(const Fit& fit, int block, const RowBlock& row
     const ScoreMap& score = fit.scores[static_cast<std::size_t>(block)];
     const std::vector<int>& columns = plan_.blocks[static_cast<std::size_t>(block)].columns;
     fill(out, rows.rows, score.constant);
-    add_columns(rows, columns, fit.gap_means, [&](std::size_t h) { return score.coefficients(static_cast<Eigen::Index>(h)); }, out);
+    add_columns(
+        rows, columns, fit.gap_means, [&](std::size_t h) { return score.coefficients(static_cast<Eigen::Index>(h)); },
+        out);
 }
 
-void TheoryContestant::form_equation_column(const DesignColumn& column, std::ptrdiff_t rows, const Eigen::MatrixXd& scores,
-                                            double* out) const {
+void TheoryContestant::form_equation_column(const DesignColumn& column, std::ptrdiff_t rows,
+                                            const Eigen::MatrixXd& scores, double* out) const {
     std::array<const double*, 16> few{};  // no allocation for any usual term
     std::vector<const double*> many;
     const std::size_t count = column.blocks.size();
@@ -289,14 +306,17 @@ void TheoryContestant::form_equation_column(const DesignColumn& column, std::ptr
     form_term(column.kind, Members(members.data(), members.size()), rows, out);
 }
 
-void TheoryContestant::form_column(const Fit& fit, const DesignColumn& column, const RowBlock& rows, RowScratch& scratch, double* out) const {
+void TheoryContestant::form_column(const Fit& fit, const DesignColumn& column, const RowBlock& rows,
+                                   RowScratch& scratch, double* out) const {
     make_room(scratch.scores, rows.rows, static_cast<Eigen::Index>(plan_.blocks.size()));
     for (const int block : column.blocks) form_score(fit, block, rows, scratch.scores.col(block).data());
     form_equation_column(column, rows.rows, scratch.scores, out);
 }
 
-void TheoryContestant::form_design(int design, const Fit& fit, const RowBlock& rows, RowScratch& scratch, double* out, std::ptrdiff_t stride) const {
-    const EquationPlan& equation = plan_.equations[static_cast<std::size_t>(designs_[static_cast<std::size_t>(design)])];
+void TheoryContestant::form_design(int design, const Fit& fit, const RowBlock& rows, RowScratch& scratch, double* out,
+                                   std::ptrdiff_t stride) const {
+    const EquationPlan& equation =
+        plan_.equations[static_cast<std::size_t>(designs_[static_cast<std::size_t>(design)])];
     const Eigen::VectorXd& shift = shifts_[static_cast<std::size_t>(design)];
     make_room(scratch.scores, rows.rows, static_cast<Eigen::Index>(plan_.blocks.size()));
     for (const int block : equation.predecessors) form_score(fit, block, rows, scratch.scores.col(block).data());
@@ -312,13 +332,16 @@ void TheoryContestant::form_design(int design, const Fit& fit, const RowBlock& r
     }
 }
 
-void TheoryContestant::predict(const Fit& fit, const RowBlock& rows, RowScratch& scratch, double* out, std::ptrdiff_t stride) const {
+void TheoryContestant::predict(const Fit& fit, const RowBlock& rows, RowScratch& scratch, double* out,
+                               std::ptrdiff_t stride) const {
     const std::ptrdiff_t n = rows.rows;
     make_room(scratch.column, n, 2);
     double* predicted = scratch.column.col(0).data();
     if (direct_) {
         fill(predicted, n, fit.direct_constant);
-        add_columns(rows, direct_columns_, fit.gap_means, [&](std::size_t h) { return fit.direct(direct_columns_[h]); }, predicted);
+        add_columns(
+            rows, direct_columns_, fit.gap_means, [&](std::size_t h) { return fit.direct(direct_columns_[h]); },
+            predicted);
     } else {
         make_room(scratch.scores, n, static_cast<Eigen::Index>(plan_.blocks.size()));
         double* term = scratch.column.col(1).data();

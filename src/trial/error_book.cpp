@@ -7,8 +7,14 @@
 
 namespace rivalfold {
 
-ErrorBook::ErrorBook(std::vector<std::size_t> members, Eigen::Index n, Eigen::VectorXd unit, bool absolute, WorkerPool& pool)
-    : members_(std::move(members)), n_(n), unit_(std::move(unit)), absolute_(absolute), pool_(pool), rows_per_task_(std::max<Eigen::Index>(8192, (n + 31) / 32)) {
+ErrorBook::ErrorBook(std::vector<std::size_t> members, Eigen::Index n, Eigen::VectorXd unit, bool absolute,
+                     WorkerPool& pool)
+    : members_(std::move(members)),
+      n_(n),
+      unit_(std::move(unit)),
+      absolute_(absolute),
+      pool_(pool),
+      rows_per_task_(std::max<Eigen::Index>(8192, (n + 31) / 32)) {
     const auto m = static_cast<Eigen::Index>(members_.size());
     products_ = Eigen::MatrixXd::Zero(n, m * (m - 1) / 2);
     if (absolute_) squares_ = Eigen::MatrixXd::Zero(n, m);
@@ -17,14 +23,16 @@ ErrorBook::ErrorBook(std::vector<std::size_t> members, Eigen::Index n, Eigen::Ve
     stack_weights_ = Eigen::VectorXd::Zero(m);
 }
 
-std::vector<Eigen::MatrixXd> ErrorBook::fold_products(std::span<const std::uint32_t> fold_of, int folds, const double* errors) {
+std::vector<Eigen::MatrixXd> ErrorBook::fold_products(std::span<const std::uint32_t> fold_of, int folds,
+                                                      const double* errors) {
     const auto m = static_cast<Eigen::Index>(members_.size());
     const Eigen::Index q = unit_.size();
     const auto tasks = static_cast<std::size_t>((n_ + rows_per_task_ - 1) / rows_per_task_);
     const Eigen::Index pairs = m * (m + 1) / 2;
     std::vector<Eigen::MatrixXd> partial(tasks);  // folds x pairs
     pool_.run(tasks, [&](std::size_t task, unsigned) {
-        const Eigen::Index first = static_cast<Eigen::Index>(task) * rows_per_task_, last = std::min(n_, first + rows_per_task_);
+        const Eigen::Index first = static_cast<Eigen::Index>(task) * rows_per_task_,
+                           last = std::min(n_, first + rows_per_task_);
         partial[task] = Eigen::MatrixXd::Zero(pairs, folds);
         Eigen::VectorXd product(last - first);
         Eigen::Index pair = 0;
@@ -41,7 +49,8 @@ std::vector<Eigen::MatrixXd> ErrorBook::fold_products(std::span<const std::uint3
                     products_.col(a * (a - 1) / 2 + b).segment(first, last - first) += product;
                 else if (absolute_)
                     squares_.col(a).segment(first, last - first) += product;
-                for (Eigen::Index i = 0; i < last - first; ++i) partial[task](pair, fold_of[static_cast<std::size_t>(first + i)]) += product(i);
+                for (Eigen::Index i = 0; i < last - first; ++i)
+                    partial[task](pair, fold_of[static_cast<std::size_t>(first + i)]) += product(i);
             }
         for (Eigen::Index a = 0; a < m; ++a)
             for (Eigen::Index j = 0; j < q; ++j) {
@@ -56,12 +65,14 @@ std::vector<Eigen::MatrixXd> ErrorBook::fold_products(std::span<const std::uint3
         Eigen::Index pair = 0;
         for (Eigen::Index a = 0; a < m; ++a)
             for (Eigen::Index b = 0; b <= a; ++b, ++pair)
-                grams[static_cast<std::size_t>(k)](a, b) = grams[static_cast<std::size_t>(k)](b, a) = partial.front()(pair, k);
+                grams[static_cast<std::size_t>(k)](a, b) = grams[static_cast<std::size_t>(k)](b, a) =
+                    partial.front()(pair, k);
     }
     return grams;
 }
 
-// The weights used on a fold come from the held-out errors of the other folds, so that the stack's loss is held out too.
+// The weights used on a fold come from the held-out errors of the other folds, so that the stack's loss is held out
+// too.
 void ErrorBook::add_repeat(std::span<const std::uint32_t> fold_of, int folds, const double* errors) {
     const auto m = static_cast<Eigen::Index>(members_.size());
     const Eigen::Index q = unit_.size();
@@ -76,7 +87,8 @@ void ErrorBook::add_repeat(std::span<const std::uint32_t> fold_of, int folds, co
     const auto tasks = static_cast<std::size_t>((n_ + rows_per_task_ - 1) / rows_per_task_);
     std::vector<Eigen::MatrixXd> partial(tasks);  // 2 x folds: loss, rows
     pool_.run(tasks, [&](std::size_t task, unsigned) {
-        const Eigen::Index first = static_cast<Eigen::Index>(task) * rows_per_task_, last = std::min(n_, first + rows_per_task_);
+        const Eigen::Index first = static_cast<Eigen::Index>(task) * rows_per_task_,
+                           last = std::min(n_, first + rows_per_task_);
         partial[task] = Eigen::MatrixXd::Zero(2, folds);
         for (Eigen::Index i = first; i < last; ++i) {
             const std::uint32_t fold = fold_of[static_cast<std::size_t>(i)];
@@ -108,7 +120,8 @@ ErrorProducts ErrorBook::take() {
     out.squares = std::move(squares_);
     out.mean_error = std::move(mean_error_);
     out.stack.row_loss = stack_loss_ / repeats;
-    out.stack.split_loss = Eigen::Map<const Eigen::VectorXd>(stack_split_loss_.data(), static_cast<Eigen::Index>(stack_split_loss_.size()));
+    out.stack.split_loss = Eigen::Map<const Eigen::VectorXd>(stack_split_loss_.data(),
+                                                             static_cast<Eigen::Index>(stack_split_loss_.size()));
     out.stack.loss = out.stack.row_loss.mean();
     out.stack.weights = stack_weights_ / static_cast<double>(stack_split_loss_.size());
     return out;

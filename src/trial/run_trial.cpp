@@ -22,7 +22,12 @@ constexpr Eigen::Index kWaveBytes = Eigen::Index{1} << 26;
 class Contest {
 public:
     Contest(const Study& study, const Survey& survey, const Sample& sample, unsigned threads)
-        : study_(study), survey_(survey), sample_(sample), pool_(std::max(1U, threads)), engine_(sample, pool_), whole_(engine_.whole_gram()),
+        : study_(study),
+          survey_(survey),
+          sample_(sample),
+          pool_(std::max(1U, threads)),
+          engine_(sample, pool_),
+          whole_(engine_.whole_gram()),
           fits_(study, survey, sample, engine_, whole_) {}
 
     void fit_all_rows() { contestants_ = fits_.fit_all_rows(trial_); }
@@ -34,7 +39,8 @@ private:
     void open_results(const FoldPlan& plan);
     void run_repeats(const FoldPlan& plan, int first, int last, const std::function<void(double)>& progress);
     void run_wave(const FoldPlan& plan, int first, int last);
-    void take_splits(const std::vector<FoldRange>& ranges, const std::vector<std::vector<SplitFits>>& fits, const std::vector<std::vector<SplitErrors>>& errors);
+    void take_splits(const std::vector<FoldRange>& ranges, const std::vector<std::vector<SplitFits>>& fits,
+                     const std::vector<std::vector<SplitErrors>>& errors);
     void throw_constant(int column, int repeat, std::size_t fold) const;
     bool needs_more_repeats(int repeats) const;
     Eigen::Index bytes_per_split() const;
@@ -51,10 +57,10 @@ private:
     std::vector<const Contestant*> view_;
     LossRule rule_;
     std::unique_ptr<ErrorBook> book_;
-    Eigen::MatrixXd row_loss_;                  // n x contestants, sums over repeats
-    std::vector<std::vector<ErrorSums>> sums_;  // per contestant and indicator
+    Eigen::MatrixXd row_loss_;                                   // n x contestants, sums over repeats
+    std::vector<std::vector<ErrorSums>> sums_;                   // per contestant and indicator
     std::vector<std::vector<double>> split_loss_, repeat_loss_;  // per contestant
-    std::vector<bool> unfit_;                   // contestants whose errors must not enter the book
+    std::vector<bool> unfit_;                                    // contestants whose errors must not enter the book
     std::vector<double> slots_, error_slots_;
     Trial trial_;
 };
@@ -80,7 +86,8 @@ void Contest::open_results(const FoldPlan& plan) {
         }
         trial_.contestants.push_back(std::move(losses));
     }
-    book_ = members.size() > 1 ? std::make_unique<ErrorBook>(members, sample_.n, trial_.unit, rule_.absolute, pool_) : nullptr;
+    book_ = members.size() > 1 ? std::make_unique<ErrorBook>(members, sample_.n, trial_.unit, rule_.absolute, pool_)
+                               : nullptr;
     row_loss_ = Eigen::MatrixXd::Zero(sample_.n, static_cast<Eigen::Index>(contestants_.size()));
     sums_.assign(contestants_.size(), std::vector<ErrorSums>(rule_.target_columns.size()));
     split_loss_.assign(contestants_.size(), {});
@@ -91,7 +98,9 @@ void Contest::throw_constant(int column, int repeat, std::size_t fold) const {
     Fault fault;
     fault.file = study_.data.file.text;
     fault.position = fmt::format("column \"{}\"", survey_.variables[static_cast<std::size_t>(column)].column);
-    fault.message = fmt::format("has one and the same value in all training rows of repeat {}, fold {}; it cannot be standardised there", repeat + 1, fold + 1);
+    fault.message = fmt::format(
+        "has one and the same value in all training rows of repeat {}, fold {}; it cannot be standardised there",
+        repeat + 1, fold + 1);
     fault.hint = "drop the indicator, or use more folds, so that each trains on more rows";
     throw FaultError(std::move(fault));
 }
@@ -133,7 +142,8 @@ Eigen::Index Contest::bytes_per_split() const {
 void Contest::run_repeats(const FoldPlan& plan, int first, int last, const std::function<void(double)>& progress) {
     // A wave holds as many repeats as keep its buffers small.
     const Eigen::Index splits = std::clamp<Eigen::Index>(kWaveBytes / bytes_per_split(), 1, 1024);
-    const int wave = static_cast<int>(std::max<Eigen::Index>(1, std::min<Eigen::Index>(200000 / sample_.n, splits / std::min(plan.folds, 1024))));
+    const int wave = static_cast<int>(
+        std::max<Eigen::Index>(1, std::min<Eigen::Index>(200000 / sample_.n, splits / std::min(plan.folds, 1024))));
     for (int r = first; r < last; r += wave) {
         run_wave(plan, r, std::min(last, r + wave));
         if (progress) progress(static_cast<double>(std::min(last, r + wave)) / plan.repeats);
@@ -153,15 +163,18 @@ void Contest::run_wave(const FoldPlan& plan, int first, int last) {
         std::vector<FoldRange> ranges;
         std::vector<PredictionSlots> slots;
         for (std::size_t r = 0; r < count; ++r) {
-            ranges.push_back({plan.repeat(first + static_cast<int>(r)), low, std::min(folds, low + kMostFolds), first + static_cast<int>(r)});
-            slots.push_back({count > 1 ? slots_.data() + r * cells : row_loss_.data(), book_ ? error_slots_.data() + r * book_->cells() : nullptr});
+            ranges.push_back({plan.repeat(first + static_cast<int>(r)), low, std::min(folds, low + kMostFolds),
+                              first + static_cast<int>(r)});
+            slots.push_back({count > 1 ? slots_.data() + r * cells : row_loss_.data(),
+                             book_ ? error_slots_.data() + r * book_->cells() : nullptr});
         }
         std::vector<std::vector<SplitFits>> fits;
         std::vector<std::vector<SplitErrors>> errors;
         engine_.fit(ranges, whole_, view_, fits);
         for (std::size_t r = 0; r < count; ++r)
             for (std::size_t k = 0; k < ranges[r].folds(); ++k)
-                if (fits[r][k].constant >= 0) throw_constant(fits[r][k].constant, ranges[r].repeat, ranges[r].first + k);
+                if (fits[r][k].constant >= 0)
+                    throw_constant(fits[r][k].constant, ranges[r].repeat, ranges[r].first + k);
         engine_.predict(ranges, fits, view_, rule_, slots, errors);
         take_splits(ranges, fits, errors);
         for (std::size_t r = 0; r < count; ++r)
@@ -169,9 +182,14 @@ void Contest::run_wave(const FoldPlan& plan, int first, int last) {
                 for (std::size_t c = 0; c < contestants_.size(); ++c) loss_sum[r][c] += split.loss[c];
     }
     for (std::size_t r = 0; r < count; ++r) {
-        if (count > 1) row_loss_.reshaped() += Eigen::Map<const Eigen::VectorXd>(slots_.data() + r * cells, static_cast<Eigen::Index>(cells));
-        for (std::size_t c = 0; c < contestants_.size(); ++c) repeat_loss_[c].push_back(loss_sum[r][c] / static_cast<double>(sample_.n));
-        if (book_) book_->add_repeat(plan.repeat(first + static_cast<int>(r)), plan.folds, error_slots_.data() + r * book_->cells());
+        if (count > 1)
+            row_loss_.reshaped() +=
+                Eigen::Map<const Eigen::VectorXd>(slots_.data() + r * cells, static_cast<Eigen::Index>(cells));
+        for (std::size_t c = 0; c < contestants_.size(); ++c)
+            repeat_loss_[c].push_back(loss_sum[r][c] / static_cast<double>(sample_.n));
+        if (book_)
+            book_->add_repeat(plan.repeat(first + static_cast<int>(r)), plan.folds,
+                              error_slots_.data() + r * book_->cells());
     }
 }
 
@@ -184,16 +202,23 @@ void Contest::take_splits(const std::vector<FoldRange>& ranges, const std::vecto
                 ContestantLosses& losses = trial_.contestants[c];
                 const Fit& fit = fits[r][k].fits[c];
                 const SplitErrors& split = errors[r][k];
-                const auto where = [&] { return fmt::format("in repeat {}, fold {}", ranges[r].repeat + 1, ranges[r].first + k + 1); };
+                const auto where = [&] {
+                    return fmt::format("in repeat {}, fold {}", ranges[r].repeat + 1, ranges[r].first + k + 1);
+                };
                 if (fit.status != FitStatus::fitted && !losses.failed) {
                     losses.failed = true;
                     losses.reason = fmt::format("{}: {}", where(), fit.reason);
                 }
                 if (!losses.failed && !std::isfinite(split.loss[c])) {
                     losses.failed = true;
-                    losses.reason = fmt::format("{}: a held-out row has no finite prediction: a score there is zero, negative or far outside the training rows", where());
+                    losses.reason = fmt::format(
+                        "{}: a held-out row has no finite prediction: a score there is zero, negative or far outside "
+                        "the training rows",
+                        where());
                 }
-                const std::size_t at = static_cast<std::size_t>(ranges[r].repeat) * static_cast<std::size_t>(trial_.folds) + ranges[r].first + k;
+                const std::size_t at =
+                    static_cast<std::size_t>(ranges[r].repeat) * static_cast<std::size_t>(trial_.folds) +
+                    ranges[r].first + k;
                 if (split_loss_[c].size() <= at) split_loss_[c].resize(at + 1);
                 split_loss_[c][at] = split.loss[c] / split.rows;
                 losses.rank_deficient_splits += fit.rank_deficient ? 1 : 0;
@@ -212,12 +237,17 @@ bool Contest::needs_more_repeats(int repeats) const {
     for (std::size_t a = 0; a < trial_.theories.size(); ++a)
         for (std::size_t b = a + 1; b < trial_.theories.size(); ++b) {
             if (trial_.contestants[a].failed || trial_.contestants[b].failed) continue;
-            const auto col_a = row_loss_.col(static_cast<Eigen::Index>(a)), col_b = row_loss_.col(static_cast<Eigen::Index>(b));
+            const auto col_a = row_loss_.col(static_cast<Eigen::Index>(a)),
+                       col_b = row_loss_.col(static_cast<Eigen::Index>(b));
             const Eigen::VectorXd d = without_rounding((col_a - col_b) / static_cast<double>(repeats), scale);
             Eigen::VectorXd by_repeat(repeats);
-            for (int r = 0; r < repeats; ++r) by_repeat(r) = repeat_loss_[a][static_cast<std::size_t>(r)] - repeat_loss_[b][static_cast<std::size_t>(r)];
+            for (int r = 0; r < repeats; ++r)
+                by_repeat(r) =
+                    repeat_loss_[a][static_cast<std::size_t>(r)] - repeat_loss_[b][static_cast<std::size_t>(r)];
             by_repeat = without_rounding(std::move(by_repeat), scale);
-            if (standard_error(by_repeat, {}, 0) > 0.1 * standard_error(d, survey_.clusters, survey_.cluster_names.size())) return true;
+            if (standard_error(by_repeat, {}, 0) >
+                0.1 * standard_error(d, survey_.clusters, survey_.cluster_names.size()))
+                return true;
         }
     return false;
 }
@@ -229,8 +259,10 @@ void Contest::finish_results() {
     for (std::size_t c = 0; c < contestants_.size(); ++c) {
         ContestantLosses& losses = trial_.contestants[c];
         losses.row_loss = row_loss_.col(static_cast<Eigen::Index>(c)) / static_cast<double>(trial_.repeats);
-        losses.split_loss = Eigen::Map<const Eigen::VectorXd>(split_loss_[c].data(), static_cast<Eigen::Index>(split_loss_[c].size()));
-        losses.repeat_loss = Eigen::Map<const Eigen::VectorXd>(repeat_loss_[c].data(), static_cast<Eigen::Index>(repeat_loss_[c].size()));
+        losses.split_loss =
+            Eigen::Map<const Eigen::VectorXd>(split_loss_[c].data(), static_cast<Eigen::Index>(split_loss_[c].size()));
+        losses.repeat_loss = Eigen::Map<const Eigen::VectorXd>(repeat_loss_[c].data(),
+                                                               static_cast<Eigen::Index>(repeat_loss_[c].size()));
         losses.loss = losses.row_loss.mean();
         double pooled = 0, pooled_mean = 0;
         for (std::size_t j = 0; j < rule_.target_columns.size(); ++j) {
@@ -238,8 +270,10 @@ void Contest::finish_results() {
             const double unit = trial_.unit(static_cast<Eigen::Index>(j));
             const int column = rule_.target_columns[j];
             const bool zero = ((sample_.values.col(column).array() + sample_.centre(column)) == 0).any();
-            losses.indicators.push_back({survey_.variables[static_cast<std::size_t>(column)].column, std::sqrt(sums.squared / cells), sums.absolute / cells,
-                                         zero ? kNaN : 100 * sums.proportional / cells, 1 - sums.squared / sums_[mean][j].squared});
+            losses.indicators.push_back({survey_.variables[static_cast<std::size_t>(column)].column,
+                                         std::sqrt(sums.squared / cells), sums.absolute / cells,
+                                         zero ? kNaN : 100 * sums.proportional / cells,
+                                         1 - sums.squared / sums_[mean][j].squared});
             losses.mae += sums.absolute / (unit * cells * q);
             pooled += sums.squared / (unit * unit);
             pooled_mean += sums_[mean][j].squared / (unit * unit);

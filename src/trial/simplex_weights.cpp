@@ -30,7 +30,9 @@ Eigen::VectorXd nonnegative_least_squares(const Eigen::MatrixXd& g, const Eigen:
         const Eigen::VectorXd gradient = b - g * x;
         Eigen::Index enter = -1;
         for (Eigen::Index k = 0; k < m; ++k)
-            if (std::find(free.begin(), free.end(), k) == free.end() && gradient(k) > tolerance && (enter < 0 || gradient(k) > gradient(enter))) enter = k;
+            if (std::find(free.begin(), free.end(), k) == free.end() && gradient(k) > tolerance &&
+                (enter < 0 || gradient(k) > gradient(enter)))
+                enter = k;
         if (enter < 0) break;
         free.push_back(enter);
         std::sort(free.begin(), free.end());

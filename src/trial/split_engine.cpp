@@ -8,15 +8,15 @@ namespace rivalfold {
 
 /// One thread's buffers: a block of rows sorted by fold, work columns, and each contestant's scratch.
 struct SplitEngine::Room {
-    Eigen::MatrixXd block;                  // padded rows x (columns + 1 + gappy): values, ones, observed masks or gaps
-    std::vector<Eigen::Index> row;          // sample row of each block position; -1 for padding
-    std::vector<std::ptrdiff_t> begin;      // per fold of the range: first block position
-    std::vector<std::ptrdiff_t> end;        // per fold: one past its last row
+    Eigen::MatrixXd block;              // padded rows x (columns + 1 + gappy): values, ones, observed masks or gaps
+    std::vector<Eigen::Index> row;      // sample row of each block position; -1 for padding
+    std::vector<std::ptrdiff_t> begin;  // per fold of the range: first block position
+    std::vector<std::ptrdiff_t> end;    // per fold: one past its last row
     std::vector<std::ptrdiff_t> cursor;
     std::vector<std::vector<std::uint32_t>> held_out;  // per fold of the range: its rows within the block
-    std::vector<std::int32_t> offset;       // of each block position, from the block's first sample row
-    std::vector<std::size_t> padding;       // block positions that hold no row
-    std::ptrdiff_t filled = 0;              // block positions in use, a multiple of kLanes
+    std::vector<std::int32_t> offset;                  // of each block position, from the block's first sample row
+    std::vector<std::size_t> padding;                  // block positions that hold no row
+    std::ptrdiff_t filled = 0;                         // block positions in use, a multiple of kLanes
     Eigen::MatrixXd design;
     Eigen::MatrixXd predicted;
     Eigen::MatrixXd inverse_actual;
@@ -26,14 +26,16 @@ struct SplitEngine::Room {
     std::vector<std::unique_ptr<FitScratch>> fit_scratch;
 
     RowBlock rows(const Sample& sample, std::ptrdiff_t first, std::ptrdiff_t count) const {
-        return {block.data() + first, sample.gappy.empty() ? nullptr : block.col(sample.n_columns + 1).data() + first, block.rows(), count};
+        return {block.data() + first, sample.gappy.empty() ? nullptr : block.col(sample.n_columns + 1).data() + first,
+                block.rows(), count};
     }
     double* make_design_room(std::ptrdiff_t rows, int columns) {
         if (design.rows() < rows || design.cols() < columns)
             design.resize(std::max<Eigen::Index>(design.rows(), rows), std::max<Eigen::Index>(design.cols(), columns));
         return design.data();
     }
-    /// Appends ones to `columns` design columns of `count` rows and adds their cross-products, without the rows in `out`.
+    /// Appends ones to `columns` design columns of `count` rows and adds their cross-products, without the rows in
+    /// `out`.
     void add_design(std::ptrdiff_t count, int columns, std::span<const std::uint32_t> out, Eigen::MatrixXd& gram) {
         fill(design.col(columns).data(), count, 1);
         const std::ptrdiff_t whole = padded(count);
@@ -49,11 +51,15 @@ struct SplitEngine::Room {
 
 /// Consecutive rows straight from the sample.
 RowBlock SplitEngine::rows_of(Eigen::Index first, std::ptrdiff_t count) const {
-    return {sample_.values.data() + first, sample_.gappy.empty() ? nullptr : sample_.gaps.data() + first, sample_.n, count};
+    return {sample_.values.data() + first, sample_.gappy.empty() ? nullptr : sample_.gaps.data() + first, sample_.n,
+            count};
 }
 
 SplitEngine::SplitEngine(const Sample& sample, WorkerPool& pool)
-    : sample_(sample), pool_(pool), segment_rows_(std::max<Eigen::Index>(32 * kBlockRows, ((sample.n + 15) / 16 + kBlockRows - 1) / kBlockRows * kBlockRows)) {
+    : sample_(sample),
+      pool_(pool),
+      segment_rows_(
+          std::max<Eigen::Index>(32 * kBlockRows, ((sample.n + 15) / 16 + kBlockRows - 1) / kBlockRows * kBlockRows)) {
     rooms_.resize(pool.size());
 }
 
@@ -68,13 +74,16 @@ SplitEngine::Room& SplitEngine::room(unsigned worker, const std::vector<const Co
     return *mine;
 }
 
-// Copies rows first .. first + rows - 1 into the room's block, sorted by fold: rows of folds before the range, then each fold of
-// the range, then the rest. With `pad`, each fold of the range starts a run of whole lanes, filled up with rows of zeros.
+// Copies rows first .. first + rows - 1 into the room's block, sorted by fold: rows of folds before the range, then
+// each fold of the range, then the rest. With `pad`, each fold of the range starts a run of whole lanes, filled up with
+// rows of zeros.
 void SplitEngine::gather(const FoldRange& range, Eigen::Index first, Eigen::Index rows, bool pad, Room& room) const {
     const std::size_t folds = range.folds();
     const std::uint32_t* fold_of = range.fold_of.data() + first;
     room.cursor.assign(folds + 2, 0);
-    const auto bucket = [&](std::uint32_t fold) { return fold < range.first ? 0 : fold >= range.last ? folds + 1 : fold - range.first + 1; };
+    const auto bucket = [&](std::uint32_t fold) {
+        return fold < range.first ? 0 : fold >= range.last ? folds + 1 : fold - range.first + 1;
+    };
     for (Eigen::Index i = 0; i < rows; ++i) ++room.cursor[bucket(fold_of[i])];
     room.begin.resize(folds);
     room.end.resize(folds);
@@ -91,9 +100,11 @@ void SplitEngine::gather(const FoldRange& range, Eigen::Index first, Eigen::Inde
     room.filled = padded(at);
     const Eigen::Index gappy = static_cast<Eigen::Index>(sample_.gappy.size());
     const Eigen::Index width = sample_.n_columns + 1 + gappy;
-    if (room.block.rows() < room.filled || room.block.cols() < width) room.block.resize(std::max<Eigen::Index>(room.filled, room.block.rows()), width);
+    if (room.block.rows() < room.filled || room.block.cols() < width)
+        room.block.resize(std::max<Eigen::Index>(room.filled, room.block.rows()), width);
     room.row.assign(static_cast<std::size_t>(room.filled), -1);
-    for (Eigen::Index i = 0; i < rows; ++i) room.row[static_cast<std::size_t>(room.cursor[bucket(fold_of[i])]++)] = first + i;
+    for (Eigen::Index i = 0; i < rows; ++i)
+        room.row[static_cast<std::size_t>(room.cursor[bucket(fold_of[i])]++)] = first + i;
     // Padding reads the block's first row and is overwritten with zeros after: no branch in the copying loop.
     room.offset.resize(static_cast<std::size_t>(room.filled));
     room.padding.clear();
@@ -111,14 +122,16 @@ void SplitEngine::gather(const FoldRange& range, Eigen::Index first, Eigen::Inde
     double* ones = room.block.col(sample_.n_columns).data();
     fill(ones, room.filled, 1);
     for (const std::size_t i : room.padding) ones[i] = 0;
-    for (Eigen::Index g = 0; g < gappy; ++g) copy(sample_.gaps.col(g).data(), room.block.col(sample_.n_columns + 1 + g).data());
+    for (Eigen::Index g = 0; g < gappy; ++g)
+        copy(sample_.gaps.col(g).data(), room.block.col(sample_.n_columns + 1 + g).data());
 }
 
 template <class Use>
 void SplitEngine::for_each_block(std::size_t segment, Use use) const {
     const Eigen::Index start = static_cast<Eigen::Index>(segment) * segment_rows_;
     const Eigen::Index stop = std::min(sample_.n, start + segment_rows_);
-    for (Eigen::Index first = start; first < stop; first += kBlockRows) use(first, std::min<Eigen::Index>(kBlockRows, stop - first));
+    for (Eigen::Index first = start; first < stop; first += kBlockRows)
+        use(first, std::min<Eigen::Index>(kBlockRows, stop - first));
 }
 
 std::vector<std::vector<Gram>> SplitEngine::fold_grams(const std::vector<FoldRange>& ranges) {
@@ -135,10 +148,12 @@ std::vector<std::vector<Gram>> SplitEngine::fold_grams(const std::vector<FoldRan
             // Turn gaps into observed masks: the Gram counts observed cells.
             for (int g = 0; g < static_cast<int>(sample_.gappy.size()); ++g)
                 for (std::ptrdiff_t i = 0; i < mine.filled; ++i)
-                    mine.block(i, sample_.n_columns + 1 + g) = mine.block(i, sample_.n_columns) - mine.block(i, sample_.n_columns + 1 + g);
+                    mine.block(i, sample_.n_columns + 1 + g) =
+                        mine.block(i, sample_.n_columns) - mine.block(i, sample_.n_columns + 1 + g);
             for (std::size_t k = 0; k < range.folds(); ++k)
                 if (mine.end[k] > mine.begin[k])
-                    add_gram(mine.block.data() + mine.begin[k], mine.block.rows(), padded(mine.end[k] - mine.begin[k]), size, grams[k].data(), size);
+                    add_gram(mine.block.data() + mine.begin[k], mine.block.rows(), padded(mine.end[k] - mine.begin[k]),
+                             size, grams[k].data(), size);
         });
     });
     std::vector<std::vector<Gram>> result(ranges.size());
@@ -155,8 +170,8 @@ Gram SplitEngine::whole_gram() {
     return fold_grams({{one_fold, 0, 1, 0}}).front().front();
 }
 
-void SplitEngine::fit(const std::vector<FoldRange>& ranges, const Gram& whole, const std::vector<const Contestant*>& contestants,
-                      std::vector<std::vector<SplitFits>>& out) {
+void SplitEngine::fit(const std::vector<FoldRange>& ranges, const Gram& whole,
+                      const std::vector<const Contestant*>& contestants, std::vector<std::vector<SplitFits>>& out) {
     const std::vector<std::vector<Gram>> held_out = fold_grams(ranges);
     std::vector<std::pair<std::size_t, std::size_t>> splits;
     out.resize(ranges.size());
@@ -205,7 +220,8 @@ void SplitEngine::fit_designs(const std::vector<FoldRange>& ranges, const std::v
     std::vector<std::pair<std::size_t, std::size_t>> origin;  // range, first fold within it
     for (std::size_t r = 0; r < ranges.size(); ++r)
         for (std::uint32_t first = ranges[r].first; first < ranges[r].last; first += folds_per_task) {
-            parts.push_back({ranges[r].fold_of, first, std::min(ranges[r].last, first + folds_per_task), ranges[r].repeat});
+            parts.push_back(
+                {ranges[r].fold_of, first, std::min(ranges[r].last, first + folds_per_task), ranges[r].repeat});
             origin.emplace_back(r, first - ranges[r].first);
         }
     const std::size_t segments = n_segments();
@@ -226,7 +242,8 @@ void SplitEngine::fit_designs(const std::vector<FoldRange>& ranges, const std::v
             for (auto& rows_out : mine.held_out) rows_out.clear();
             for (std::ptrdiff_t i = 0; i < count; ++i) {
                 const std::uint32_t fold = parts[part].fold_of[static_cast<std::size_t>(first + i)];
-                if (fold >= parts[part].first && fold < parts[part].last) mine.held_out[fold - parts[part].first].push_back(static_cast<std::uint32_t>(i));
+                if (fold >= parts[part].first && fold < parts[part].last)
+                    mine.held_out[fold - parts[part].first].push_back(static_cast<std::uint32_t>(i));
             }
             for (std::size_t k = 0; k < parts[part].folds(); ++k)
                 for (std::size_t j = 0; j < jobs.size(); ++j) {
@@ -234,7 +251,8 @@ void SplitEngine::fit_designs(const std::vector<FoldRange>& ranges, const std::v
                     if (fit.status != FitStatus::fitted) continue;
                     const int columns = contestants[jobs[j].contestant]->design_columns(jobs[j].design);
                     double* design = mine.make_design_room(padded(count), columns + 1);
-                    contestants[jobs[j].contestant]->form_design(jobs[j].design, fit, rows, mine.scratch, design, mine.design.rows());
+                    contestants[jobs[j].contestant]->form_design(jobs[j].design, fit, rows, mine.scratch, design,
+                                                                 mine.design.rows());
                     mine.add_design(count, columns, mine.held_out[k], grams[k * jobs.size() + j]);
                 }
         });
@@ -279,8 +297,8 @@ Eigen::MatrixXd SplitEngine::gram_of(int n_columns, const FormColumns& form) {
 }
 
 void SplitEngine::predict_segment(const FoldRange& range, std::size_t segment, const std::vector<SplitFits>& fits,
-                                  const std::vector<const Contestant*>& contestants, const LossRule& rule, const PredictionSlots& slots, Room& mine,
-                                  std::vector<SplitErrors>& out) {
+                                  const std::vector<const Contestant*>& contestants, const LossRule& rule,
+                                  const PredictionSlots& slots, Room& mine, std::vector<SplitErrors>& out) {
     const auto q = static_cast<std::ptrdiff_t>(rule.target_columns.size());
     out.resize(range.folds());
     for (SplitErrors& errors : out) {
@@ -310,18 +328,21 @@ void SplitEngine::predict_segment(const FoldRange& range, std::size_t segment, c
             const RowBlock rows = mine.rows(sample_, begin, n);
             for (std::size_t c = 0; c < contestants.size(); ++c) {
                 if (fits[k].fits[c].status != FitStatus::fitted) continue;
-                contestants[c]->predict(fits[k].fits[c], rows, mine.scratch, mine.predicted.data(), mine.predicted.rows());
+                contestants[c]->predict(fits[k].fits[c], rows, mine.scratch, mine.predicted.data(),
+                                        mine.predicted.rows());
                 fill(mine.row_squared.data(), n, 0);
                 fill(mine.row_absolute.data(), n, 0);
                 for (std::ptrdiff_t j = 0; j < q; ++j)
-                    add_errors(rows.values + rule.target_columns[static_cast<std::size_t>(j)] * rows.stride, mine.predicted.col(j).data(),
-                               mine.inverse_actual.col(j).data() + begin, n, rule.one_over_unit(j), mine.row_squared.data(), mine.row_absolute.data(),
+                    add_errors(rows.values + rule.target_columns[static_cast<std::size_t>(j)] * rows.stride,
+                               mine.predicted.col(j).data(), mine.inverse_actual.col(j).data() + begin, n,
+                               rule.one_over_unit(j), mine.row_squared.data(), mine.row_absolute.data(),
                                out[k].sums[c][static_cast<std::size_t>(j)]);
                 const double* loss = rule.absolute ? mine.row_absolute.data() : mine.row_squared.data();
                 double sum = 0;
                 for (std::ptrdiff_t i = 0; i < n; ++i) {
                     const double value = loss[i] / static_cast<double>(q);
-                    slots.row_loss[static_cast<Eigen::Index>(c) * sample_.n + mine.row[static_cast<std::size_t>(begin + i)]] += value;
+                    slots.row_loss[static_cast<Eigen::Index>(c) * sample_.n +
+                                   mine.row[static_cast<std::size_t>(begin + i)]] += value;
                     sum += value;
                 }
                 out[k].loss[c] += sum;
@@ -331,7 +352,8 @@ void SplitEngine::predict_segment(const FoldRange& range, std::size_t segment, c
                     const double* predicted = mine.predicted.col(j).data();
                     double* to = slots.errors + (rule.error_slot[c] * q + j) * sample_.n;
                     const double scale = rule.one_over_unit(j);
-                    for (std::ptrdiff_t i = 0; i < n; ++i) to[mine.row[static_cast<std::size_t>(begin + i)]] = (actual[i] - predicted[i]) * scale;
+                    for (std::ptrdiff_t i = 0; i < n; ++i)
+                        to[mine.row[static_cast<std::size_t>(begin + i)]] = (actual[i] - predicted[i]) * scale;
                 }
             }
         }
@@ -339,13 +361,14 @@ void SplitEngine::predict_segment(const FoldRange& range, std::size_t segment, c
 }
 
 void SplitEngine::predict(const std::vector<FoldRange>& ranges, const std::vector<std::vector<SplitFits>>& fits,
-                          const std::vector<const Contestant*>& contestants, const LossRule& rule, const std::vector<PredictionSlots>& slots,
-                          std::vector<std::vector<SplitErrors>>& out) {
+                          const std::vector<const Contestant*>& contestants, const LossRule& rule,
+                          const std::vector<PredictionSlots>& slots, std::vector<std::vector<SplitErrors>>& out) {
     const std::size_t segments = n_segments();
     std::vector<std::vector<SplitErrors>> partial(ranges.size() * segments);
     pool_.run(partial.size(), [&](std::size_t number, unsigned worker) {
         const std::size_t r = number / segments;
-        predict_segment(ranges[r], number % segments, fits[r], contestants, rule, slots[r], room(worker, &contestants), partial[number]);
+        predict_segment(ranges[r], number % segments, fits[r], contestants, rule, slots[r], room(worker, &contestants),
+                        partial[number]);
     });
     out.resize(ranges.size());
     for (std::size_t r = 0; r < ranges.size(); ++r) {

@@ -1,6 +1,6 @@
 // The passes over the rows: cross-products of held-out rows, designs of bent terms on training rows, predictions of
-// held-out rows. Works on ranges of folds of a repeat, in blocks of rows that stay in cache; sums are made per segment of
-// rows and added in segment order, so that every number is the same for any count of threads.
+// held-out rows. Works on ranges of folds of a repeat, in blocks of rows that stay in cache; sums are made per segment
+// of rows and added in segment order, so that every number is the same for any count of threads.
 #pragma once
 
 #include "rivalfold/theory/contestant.hpp"
@@ -34,14 +34,14 @@ struct SplitFits {
 /// What the predictions of one split cost each contestant.
 struct SplitErrors {
     double rows = 0;
-    std::vector<double> loss;                 ///< per contestant: sum of row losses
-    std::vector<std::vector<ErrorSums>> sums; ///< per contestant and target indicator
+    std::vector<double> loss;                  ///< per contestant: sum of row losses
+    std::vector<std::vector<ErrorSums>> sums;  ///< per contestant and target indicator
 };
 
 struct LossRule {
     bool absolute = false;
-    Eigen::VectorXd one_over_unit;     ///< per target indicator: 1 / u_j
-    std::vector<int> target_columns;   ///< sample columns
+    Eigen::VectorXd one_over_unit;           ///< per target indicator: 1 / u_j
+    std::vector<int> target_columns;         ///< sample columns
     std::vector<std::ptrdiff_t> error_slot;  ///< per contestant: its place among the recorded errors, or -1
 };
 
@@ -62,14 +62,15 @@ public:
              std::vector<std::vector<SplitFits>>& out);
     /// Predicts each fold's rows into the slots of its range.
     void predict(const std::vector<FoldRange>& ranges, const std::vector<std::vector<SplitFits>>& fits,
-                 const std::vector<const Contestant*>& contestants, const LossRule& rule, const std::vector<PredictionSlots>& slots,
-                 std::vector<std::vector<SplitErrors>>& out);
+                 const std::vector<const Contestant*>& contestants, const LossRule& rule,
+                 const std::vector<PredictionSlots>& slots, std::vector<std::vector<SplitErrors>>& out);
 
     /// Fits to all rows.
     SplitFits fit_whole(const Gram& whole, const std::vector<const Contestant*>& contestants);
     Gram whole_gram();
 
-    /// Gram matrix (lower triangle) of [columns, 1] over all rows; `form` writes the columns of a block of rows, `stride` apart.
+    /// Gram matrix (lower triangle) of [columns, 1] over all rows; `form` writes the columns of a block of rows,
+    /// `stride` apart.
     using FormColumns = std::function<void(const RowBlock&, RowScratch&, double* out, std::ptrdiff_t stride)>;
     Eigen::MatrixXd gram_of(int n_columns, const FormColumns& form);
 
@@ -86,8 +87,8 @@ private:
     void fit_designs(const std::vector<FoldRange>& ranges, const std::vector<const Contestant*>& contestants,
                      std::vector<std::vector<SplitFits>>& out);
     void predict_segment(const FoldRange& range, std::size_t segment, const std::vector<SplitFits>& fits,
-                         const std::vector<const Contestant*>& contestants, const LossRule& rule, const PredictionSlots& slots, Room& room,
-                         std::vector<SplitErrors>& out);
+                         const std::vector<const Contestant*>& contestants, const LossRule& rule,
+                         const PredictionSlots& slots, Room& room, std::vector<SplitErrors>& out);
     Room& room(unsigned worker, const std::vector<const Contestant*>* contestants);
 
     const Sample& sample_;

@@ -14,7 +14,8 @@ Eigen::VectorXd standard_deviations(const Sample& sample, const std::vector<int>
     for (std::size_t j = 0; j < columns.size(); ++j) {
         const auto column = sample.values.col(columns[j]);
         const double mean = column.mean();
-        out(static_cast<Eigen::Index>(j)) = std::sqrt((column.array() - mean).square().sum() / static_cast<double>(sample.n - 1));
+        out(static_cast<Eigen::Index>(j)) =
+            std::sqrt((column.array() - mean).square().sum() / static_cast<double>(sample.n - 1));
     }
     return out;
 }
@@ -89,31 +90,35 @@ void WholeFits::fit_full_model(Trial& trial) {
     }
     const int c = static_cast<int>(columns.size());
     const int q = static_cast<int>(n_theories);
-    const Eigen::MatrixXd gram = engine_.gram_of(c + q, [&](const RowBlock& rows, RowScratch& scratch, double* out, std::ptrdiff_t stride) {
-        for (int k = 0; k < c; ++k) {
-            const Column& column = columns[static_cast<std::size_t>(k)];
-            double* to = out + k * stride;
-            trial.theories[column.theory]->form_column(trial.whole[column.theory].fit, *column.column, rows, scratch, to);
-            for (std::ptrdiff_t i = 0; i < rows.rows; ++i) to[i] -= column.shift;
-        }
-        for (int t = 0; t < q; ++t) {
-            const auto theory = static_cast<std::size_t>(t);
-            double* to = out + (c + t) * stride;
-            if (trial.whole[theory].failed) {
-                fill(to, rows.rows, 0);
-                continue;
+    const Eigen::MatrixXd gram =
+        engine_.gram_of(c + q, [&](const RowBlock& rows, RowScratch& scratch, double* out, std::ptrdiff_t stride) {
+            for (int k = 0; k < c; ++k) {
+                const Column& column = columns[static_cast<std::size_t>(k)];
+                double* to = out + k * stride;
+                trial.theories[column.theory]->form_column(trial.whole[column.theory].fit, *column.column, rows,
+                                                           scratch, to);
+                for (std::ptrdiff_t i = 0; i < rows.rows; ++i) to[i] -= column.shift;
             }
-            const int target = trial.theories[theory]->blueprint().target_block();
-            const ScoreMap& score = trial.whole[theory].fit.scores[static_cast<std::size_t>(target)];
-            trial.theories[theory]->form_score(trial.whole[theory].fit, target, rows, to);
-            for (std::ptrdiff_t i = 0; i < rows.rows; ++i) to[i] = (to[i] - score.mean) / score.sd;
-        }
-    });
+            for (int t = 0; t < q; ++t) {
+                const auto theory = static_cast<std::size_t>(t);
+                double* to = out + (c + t) * stride;
+                if (trial.whole[theory].failed) {
+                    fill(to, rows.rows, 0);
+                    continue;
+                }
+                const int target = trial.theories[theory]->blueprint().target_block();
+                const ScoreMap& score = trial.whole[theory].fit.scores[static_cast<std::size_t>(target)];
+                trial.theories[theory]->form_score(trial.whole[theory].fit, target, rows, to);
+                for (std::ptrdiff_t i = 0; i < rows.rows; ++i) to[i] = (to[i] - score.mean) / score.sd;
+            }
+        });
     CrossProducts sums;
     const Eigen::Index ones = c + q;
     sums.n = gram(ones, ones);
     const Eigen::VectorXd mean = gram.row(ones).head(c + q).transpose() / sums.n;
-    const auto about = [&](Eigen::Index i, Eigen::Index k) { return gram(std::max(i, k), std::min(i, k)) - sums.n * mean(i) * mean(k); };
+    const auto about = [&](Eigen::Index i, Eigen::Index k) {
+        return gram(std::max(i, k), std::min(i, k)) - sums.n * mean(i) * mean(k);
+    };
     sums.mean_x = mean.head(c);
     sums.mean_y = mean.tail(q);
     sums.xx.resize(c, c);
@@ -129,7 +134,8 @@ void WholeFits::fit_full_model(Trial& trial) {
     full.solve(sums);
     trial.full_model.rank = full.rank();
     trial.full_model.sse.resize(q);
-    for (int t = 0; t < q; ++t) trial.full_model.sse(t) = trial.whole[static_cast<std::size_t>(t)].failed ? kNaN : full.sse(sums, t);
+    for (int t = 0; t < q; ++t)
+        trial.full_model.sse(t) = trial.whole[static_cast<std::size_t>(t)].failed ? kNaN : full.sse(sums, t);
 }
 
 }  // namespace rivalfold

@@ -14,8 +14,8 @@ public:
     WholeFits(const Study& study, const Survey& survey, const Sample& sample, SplitEngine& engine, const Gram& whole)
         : study_(study), survey_(survey), sample_(sample), engine_(engine), whole_(whole) {}
 
-    /// Fills theories, whole, unit and benchmark_predictors of `trial`; returns the contestants for the folds: the theories in file
-    /// order, the training mean, the linear benchmark.
+    /// Fills theories, whole, unit and benchmark_predictors of `trial`; returns the contestants for the folds: the
+    /// theories in file order, the training mean, the linear benchmark.
     std::vector<std::unique_ptr<Contestant>> fit_all_rows(Trial& trial);
     /// Fills full_model of `trial`, after fit_all_rows().
     void fit_full_model(Trial& trial);

@@ -27,7 +27,9 @@ struct Interval {
     double low = kNaN, high = kNaN;
 };
 
-void say(CompletenessReport& report, const std::string& sentence) { report.note += (report.note.empty() ? "" : " ") + sentence; }
+void say(CompletenessReport& report, const std::string& sentence) {
+    report.note += (report.note.empty() ? "" : " ") + sentence;
+}
 
 std::vector<std::size_t> first_numbers(std::vector<std::uint32_t> order, std::size_t count) {
     std::sort(order.begin(), order.begin() + static_cast<std::ptrdiff_t>(count));
@@ -53,7 +55,8 @@ std::vector<std::size_t> whole_clusters(const Survey& survey, std::size_t most, 
     return out;
 }
 
-void choose_rows(const Study& study, const Survey& survey, std::size_t n, std::size_t most, CompletenessReport& report) {
+void choose_rows(const Study& study, const Survey& survey, std::size_t n, std::size_t most,
+                 CompletenessReport& report) {
     if (n <= most) {
         report.row_index.resize(n);
         std::iota(report.row_index.begin(), report.row_index.end(), std::size_t{0});
@@ -62,21 +65,23 @@ void choose_rows(const Study& study, const Survey& survey, std::size_t n, std::s
         if (!survey.clusters.empty()) report.row_index = whole_clusters(survey, most, stream);
         const bool whole = !report.row_index.empty();
         if (!whole) report.row_index = first_numbers(shuffled(n, stream), most);
-        say(report, fmt::format("Completeness was measured on {} of the {} rows, {} from the seed.", report.row_index.size(), n,
-                                whole ? "in whole clusters drawn" : "drawn"));
+        say(report, fmt::format("Completeness was measured on {} of the {} rows, {} from the seed.",
+                                report.row_index.size(), n, whole ? "in whole clusters drawn" : "drawn"));
         report.subsample = true;
     }
     report.rows = report.row_index.size();
 }
 
-FlexibleTask task_of(const Study& study, const FoldPlan& plan, const Trial& trial, const CompletenessLimits& limits, CompletenessReport& report) {
+FlexibleTask task_of(const Study& study, const FoldPlan& plan, const Trial& trial, const CompletenessLimits& limits,
+                     CompletenessReport& report) {
     FlexibleTask task;
     task.predictors = trial.benchmark_predictors;
     task.targets = trial.theories.front()->blueprint().target_columns();
     task.folds = static_cast<std::uint32_t>(plan.folds);
     if (plan.folds > limits.folds && report.rows > limits.folds_rows) {
         task.folds = static_cast<std::uint32_t>(limits.folds);
-        say(report, fmt::format("For the flexible benchmark the {} folds were joined to {}.", plan.folds, limits.folds));
+        say(report,
+            fmt::format("For the flexible benchmark the {} folds were joined to {}.", plan.folds, limits.folds));
     }
     for (const std::size_t row : report.row_index) {
         task.rows.push_back(static_cast<Eigen::Index>(row));
@@ -125,7 +130,8 @@ Eigen::MatrixXd losses_by_unit(const Survey& survey, const Trial& trial, const C
     for (Eigen::Index r = 0; r < n; ++r) {
         const Eigen::Index to = slot[static_cast<std::size_t>(r)];
         const auto row = static_cast<Eigen::Index>(report.row_index[static_cast<std::size_t>(r)]);
-        for (std::size_t c = 0; c < members; ++c) out(static_cast<Eigen::Index>(c), to) += trial.contestants[c].row_loss(row);
+        for (std::size_t c = 0; c < members; ++c)
+            out(static_cast<Eigen::Index>(c), to) += trial.contestants[c].row_loss(row);
         out(static_cast<Eigen::Index>(members), to) += report.flexible_row_loss(r);
     }
     return out;
@@ -139,7 +145,8 @@ Eigen::MatrixXd resample(const Eigen::MatrixXd& losses, std::uint64_t seed, Work
         for (std::size_t b = task * kTogether; b < (task + 1) * kTogether; ++b) {
             RandomStream stream(seed, Purpose::bootstrap, kResampleStream + static_cast<std::uint32_t>(b));
             for (Eigen::Index k = 0; k < losses.cols(); ++k)
-                out.col(static_cast<Eigen::Index>(b)) += losses.col(static_cast<Eigen::Index>(stream.below(static_cast<std::uint64_t>(losses.cols()))));
+                out.col(static_cast<Eigen::Index>(b)) +=
+                    losses.col(static_cast<Eigen::Index>(stream.below(static_cast<std::uint64_t>(losses.cols()))));
         }
     });
     return out;
@@ -151,35 +158,47 @@ Interval percentiles(Eigen::VectorXd values, double level) {
     return {values(beyond - 1), values(kResamples - beyond)};
 }
 
-/// Why no share of loss(mean) - loss(flexible) can be given; empty if one can. `gain` is that difference, its interval as a mean per row.
+/// Why no share of loss(mean) - loss(flexible) can be given; empty if one can. `gain` is that difference, its interval
+/// as a mean per row.
 std::string no_share(double gain, const Interval& interval, const CompletenessReport& report, double level) {
     if (!(gain > 0))
-        return fmt::format("the flexible benchmark predicts no better than the mean (loss {:.4g} against {:.4g}), so there is no gain of which a "
-                           "theory could reach a share", report.loss_flexible, report.loss_mean);
+        return fmt::format(
+            "the flexible benchmark predicts no better than the mean (loss {:.4g} against {:.4g}), so there is no gain "
+            "of which a "
+            "theory could reach a share",
+            report.loss_flexible, report.loss_mean);
     if (!(interval.low > 0))
-        return fmt::format("the flexible benchmark's gain over the mean may be nothing (loss lower by {:.3g}, {:g}% interval {:.3g} to {:.3g}), so no "
-                           "share of it can be given", gain, 100 * (1 - level), interval.low, interval.high);
+        return fmt::format(
+            "the flexible benchmark's gain over the mean may be nothing (loss lower by {:.3g}, {:g}% interval {:.3g} "
+            "to {:.3g}), so no "
+            "share of it can be given",
+            gain, 100 * (1 - level), interval.low, interval.high);
     return {};
 }
 
-void fill_theory(const Eigen::MatrixXd& losses, const Eigen::MatrixXd& resampled, double level, TheoryCompleteness& out) {
-    const Eigen::Index flexible = losses.rows() - 1, mean = flexible - 1, theory = static_cast<Eigen::Index>(out.contestant);
+void fill_theory(const Eigen::MatrixXd& losses, const Eigen::MatrixXd& resampled, double level,
+                 TheoryCompleteness& out) {
+    const Eigen::Index flexible = losses.rows() - 1, mean = flexible - 1,
+                       theory = static_cast<Eigen::Index>(out.contestant);
     const Eigen::VectorXd sums = losses.rowwise().sum();
     out.completeness = (sums(mean) - sums(theory)) / (sums(mean) - sums(flexible));
     Eigen::VectorXd ratio(kResamples);
     for (Eigen::Index b = 0; b < kResamples; ++b) {
-        const double reached = resampled(mean, b) - resampled(theory, b), possible = resampled(mean, b) - resampled(flexible, b);
+        const double reached = resampled(mean, b) - resampled(theory, b),
+                     possible = resampled(mean, b) - resampled(flexible, b);
         // The few resamples without anything to predict stand outside every bound.
         ratio(b) = possible > 0 ? reached / possible : (reached > 0 ? kInfinity : -kInfinity);
     }
     const Interval interval = percentiles(std::move(ratio), level);
     out.low = interval.low;
     out.high = interval.high;
-    if (out.completeness > 1) out.reason = "above 1: it predicts better than the flexible benchmark does with this many rows";
+    if (out.completeness > 1)
+        out.reason = "above 1: it predicts better than the flexible benchmark does with this many rows";
     if (out.completeness < 0) out.reason = "below 0: it predicts worse than the mean";
 }
 
-void fill_completeness(const Study& study, const Survey& survey, const Trial& trial, WorkerPool& pool, CompletenessReport& report) {
+void fill_completeness(const Study& study, const Survey& survey, const Trial& trial, WorkerPool& pool,
+                       CompletenessReport& report) {
     const Eigen::MatrixXd losses = losses_by_unit(survey, trial, report);
     const Eigen::MatrixXd resampled = resample(losses, study.trial.seed, pool);
     const double level = study.verdict.level;
@@ -201,8 +220,9 @@ void fill_completeness(const Study& study, const Survey& survey, const Trial& tr
 
 }  // namespace
 
-CompletenessReport measure_completeness(const Study& study, const Survey& survey, const Sample& sample, const FoldPlan& plan, const Trial& trial,
-                                        unsigned threads, const CompletenessLimits& limits) {
+CompletenessReport measure_completeness(const Study& study, const Survey& survey, const Sample& sample,
+                                        const FoldPlan& plan, const Trial& trial, unsigned threads,
+                                        const CompletenessLimits& limits) {
     const auto begun = std::chrono::steady_clock::now();
     CompletenessReport report;
     choose_rows(study, survey, static_cast<std::size_t>(sample.n), limits.rows, report);
@@ -214,15 +234,18 @@ CompletenessReport measure_completeness(const Study& study, const Survey& survey
     WorkerPool pool(std::max(1U, threads));
     const FlexibleErrors errors = predict_flexibly(sample, task, pool);
     if (errors.chosen_on_fewer)
-        say(report, fmt::format("The flexible benchmark's length-scale and penalty were chosen on {} of each fold's training rows, then fitted to all of them.",
+        say(report, fmt::format("The flexible benchmark's length-scale and penalty were chosen on {} of each fold's "
+                                "training rows, then fitted to all of them.",
                                 limits.choice_rows));
     take_errors(errors, trial.unit, study.trial.loss, report);
     const RestrictivenessReport restricted = measure_restrictiveness(study, sample, trial, limits.draw_rows);
     if (restricted.rows < static_cast<std::size_t>(sample.n))
-        say(report, fmt::format("Restrictiveness was measured on {} of the {} rows, drawn from the seed.", restricted.rows, sample.n));
+        say(report, fmt::format("Restrictiveness was measured on {} of the {} rows, drawn from the seed.",
+                                restricted.rows, sample.n));
     report.antecedents = restricted.antecedents;
     for (std::size_t t = 0; t < trial.theories.size(); ++t) {
-        report.theories.push_back({t, kNaN, kNaN, kNaN, restricted.theories[t].value, restricted.theories[t].standard_error, {}});
+        report.theories.push_back(
+            {t, kNaN, kNaN, kNaN, restricted.theories[t].value, restricted.theories[t].standard_error, {}});
     }
     fill_completeness(study, survey, trial, pool, report);
     report.computed = true;

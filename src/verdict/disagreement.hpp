@@ -5,8 +5,9 @@
 
 namespace rivalfold {
 
-/// `first`, `second`: contestants, both finished theories. Scores are those of the first theory's fit to all rows (the second's for
-/// constructs that only it uses), in standard units; thirds are by rank, ties kept in row order.
-Disagreement find_disagreement(const Study& study, const Survey& survey, const Sample& sample, const Trial& trial, std::size_t first, std::size_t second);
+/// `first`, `second`: contestants, both finished theories. Scores are those of the first theory's fit to all rows (the
+/// second's for constructs that only it uses), in standard units; thirds are by rank, ties kept in row order.
+Disagreement find_disagreement(const Study& study, const Survey& survey, const Sample& sample, const Trial& trial,
+                               std::size_t first, std::size_t second);
 
 }  // namespace rivalfold

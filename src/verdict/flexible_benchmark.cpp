@@ -21,10 +21,11 @@ struct Split {
     Eigen::MatrixXd y;                  // training rows x targets, in own units
     Eigen::VectorXd target_sd;          // of the training rows
     Eigen::MatrixXd choice_train, choice_y;
-    double distance = 1;                // median, of the rows for the choice
+    double distance = 1;  // median, of the rows for the choice
 };
 
-Eigen::MatrixXd predictors_of(const Sample& sample, const std::vector<int>& columns, const Moments& moments, const std::vector<Eigen::Index>& rows) {
+Eigen::MatrixXd predictors_of(const Sample& sample, const std::vector<int>& columns, const Moments& moments,
+                              const std::vector<Eigen::Index>& rows) {
     Eigen::MatrixXd out(static_cast<Eigen::Index>(rows.size()), static_cast<Eigen::Index>(columns.size()));
     for (Eigen::Index c = 0; c < out.cols(); ++c) {
         const int column = columns[static_cast<std::size_t>(c)];
@@ -87,7 +88,8 @@ Eigen::VectorXd choice_errors(const Split& split, double multiple) {
     return out;
 }
 
-void predict_fold(const Sample& sample, const FlexibleTask& task, const Split& split, double length, double penalty, FlexibleErrors& out) {
+void predict_fold(const Sample& sample, const FlexibleTask& task, const Split& split, double length, double penalty,
+                  FlexibleErrors& out) {
     const KernelRidge fit = fit_kernel_ridge(gaussian_kernel(split.train, split.train, length), split.y, penalty);
     const Eigen::MatrixXd predicted = fit.predict(gaussian_kernel(split.test, split.train, length));
     const Eigen::RowVectorXd mean = split.y.colwise().mean();
@@ -105,7 +107,9 @@ double penalty_at(int step) { return std::pow(10.0, 4 - step / 2.0); }
 
 FlexibleErrors predict_flexibly(const Sample& sample, const FlexibleTask& task, WorkerPool& pool) {
     std::vector<Split> splits(task.folds);
-    pool.run(splits.size(), [&](std::size_t fold, unsigned) { splits[fold] = make_split(sample, task, static_cast<std::uint32_t>(fold)); });
+    pool.run(splits.size(), [&](std::size_t fold, unsigned) {
+        splits[fold] = make_split(sample, task, static_cast<std::uint32_t>(fold));
+    });
     std::vector<Eigen::VectorXd> left_out(splits.size() * kLengths);
     pool.run(left_out.size(), [&](std::size_t number, unsigned) {
         const Split& split = splits[number / kLengths];
@@ -134,7 +138,8 @@ FlexibleErrors predict_flexibly(const Sample& sample, const FlexibleTask& task, 
     WorkerPool few(std::min(pool.size(), std::max(1U, static_cast<unsigned>(std::min(1024.0, kRoomAtOnce / bytes)))));
     few.run(splits.size(), [&](std::size_t fold, unsigned) {
         if (!splits[fold].held_out.empty())
-            predict_fold(sample, task, splits[fold], out.multiple[fold] * splits[fold].distance, out.penalty[fold], out);
+            predict_fold(sample, task, splits[fold], out.multiple[fold] * splits[fold].distance, out.penalty[fold],
+                         out);
     });
     return out;
 }

@@ -30,7 +30,8 @@ double sse_without(const CrossProducts& sums, Eigen::Index left_out) {
     return solution.sse(fewer);
 }
 
-void add_term(EquationReport& out, const std::string& label, double coefficient, double variance_factor, double sse, double df, double f2) {
+void add_term(EquationReport& out, const std::string& label, double coefficient, double variance_factor, double sse,
+              double df, double f2) {
     TermReport term{label, coefficient, kNaN, kNaN, kNaN, f2, {}};
     if (std::isnan(variance_factor))
         term.reason = "the terms are linearly dependent, so single coefficients have no standard errors";
@@ -80,7 +81,8 @@ std::vector<ConstructWeights> report_weights(const Survey& survey, const Bluepri
         ConstructWeights weights{block.construct, {}};
         for (std::size_t h = 0; h < block.columns.size(); ++h)
             weights.indicators.push_back({survey.variables[static_cast<std::size_t>(block.columns[h])].column,
-                                          fit.weights[b](static_cast<Eigen::Index>(h)), fit.loadings[b](static_cast<Eigen::Index>(h))});
+                                          fit.weights[b](static_cast<Eigen::Index>(h)),
+                                          fit.loadings[b](static_cast<Eigen::Index>(h))});
         out.push_back(std::move(weights));
     }
     return out;
@@ -104,7 +106,9 @@ Criteria criteria_of(double sse, double n, double p, double mse_full) {
     out.gm = mse_full > 0 ? sse / mse_full + p * std::log(n) : kNaN;
     out.bic_weight = kNaN;
     if (std::isnan(out.aicc)) out.reason = "AICc needs more rows than coefficients + 1";
-    if (std::isnan(out.gm)) out.reason += std::string(out.reason.empty() ? "" : "; ") + "GM needs a full model with residual degrees of freedom";
+    if (std::isnan(out.gm))
+        out.reason +=
+            std::string(out.reason.empty() ? "" : "; ") + "GM needs a full model with residual degrees of freedom";
     return out;
 }
 
@@ -112,7 +116,8 @@ void report_in_sample(const Survey& survey, const Trial& trial, std::size_t theo
     const Blueprint& plan = trial.theories[theory]->blueprint();
     const Fit& fit = trial.whole[theory].fit;
     for (const int e : plan.file_order)
-        out.equations.push_back(report_equation(plan.equations[static_cast<std::size_t>(e)], fit.equations[static_cast<std::size_t>(e)]));
+        out.equations.push_back(
+            report_equation(plan.equations[static_cast<std::size_t>(e)], fit.equations[static_cast<std::size_t>(e)]));
     out.weights = report_weights(survey, plan, fit);
     const EquationFit& target = fit.equations[static_cast<std::size_t>(plan.target_equation)];
     const double n = target.sums.n;
@@ -140,7 +145,8 @@ void weigh_by_bic(std::vector<TheoryReport>& theories) {
         if (!std::isnan(theory.criteria.bic)) sum += std::exp(-(theory.criteria.bic - least) / 2);
     for (TheoryReport& theory : theories) theory.bic_difference = theory.criteria.bic - least;  // NaN stays NaN
     for (TheoryReport& theory : theories)
-        theory.criteria.bic_weight = std::isnan(theory.criteria.bic) ? kNaN : std::exp(-(theory.criteria.bic - least) / 2) / sum;
+        theory.criteria.bic_weight =
+            std::isnan(theory.criteria.bic) ? kNaN : std::exp(-(theory.criteria.bic - least) / 2) / sum;
 }
 
 }  // namespace rivalfold

@@ -36,7 +36,8 @@ double median_distance(const Eigen::MatrixXd& x) {
     for (Eigen::Index k = 0; k < x.rows(); ++k)
         for (Eigen::Index i = k + 1; i < x.rows(); ++i) {
             // A distance that is nothing but rounding is none.
-            const double value = squared(i, k) > 1e-14 * (x.row(i).squaredNorm() + x.row(k).squaredNorm()) ? squared(i, k) : 0;
+            const double value =
+                squared(i, k) > 1e-14 * (x.row(i).squaredNorm() + x.row(k).squaredNorm()) ? squared(i, k) : 0;
             pairs.push_back(value);
             sum += value;
         }
@@ -68,8 +69,8 @@ KernelRidge fit_kernel_ridge(Eigen::MatrixXd kernel, const Eigen::MatrixXd& y, d
     return out;
 }
 
-// Within the complement of the ones, spanned by all but the first column of the reflection H = I - b vv' that turns 1 / sqrt n into -e_1:
-// there the ones, an eigenvector of CKC with value 0, cost no digits.
+// Within the complement of the ones, spanned by all but the first column of the reflection H = I - b vv' that turns 1 /
+// sqrt n into -e_1: there the ones, an eigenvector of CKC with value 0, cost no digits.
 LeaveOneOut::LeaveOneOut(const Eigen::MatrixXd& kernel, const Eigen::MatrixXd& y) {
     const Eigen::Index n = kernel.rows();
     Eigen::VectorXd v = Eigen::VectorXd::Constant(n, 1 / std::sqrt(static_cast<double>(n)));
@@ -91,9 +92,10 @@ LeaveOneOut::LeaveOneOut(const Eigen::MatrixXd& kernel, const Eigen::MatrixXd& y
     rotated_.noalias() = basis_.transpose() * (y.rowwise() - y.colwise().mean());
 }
 
-// T + penalty = L D L' with a unit bidiagonal L. The rows of P L^-T, column after column, give the diagonal of P (T + penalty)^-1 P'.
+// T + penalty = L D L' with a unit bidiagonal L. The rows of P L^-T, column after column, give the diagonal of P (T +
+// penalty)^-1 P'.
 Eigen::MatrixXd LeaveOneOut::residuals(double penalty) const {
-    const Eigen::Index n = diagonal_.size();  // one less than rows
+    const Eigen::Index n = diagonal_.size();                     // one less than rows
     Eigen::VectorXd pivot(n), below = Eigen::VectorXd::Zero(n);  // D, and L(k + 1, k)
     pivot(0) = diagonal_(0) + penalty;
     for (Eigen::Index k = 1; k < n; ++k) {

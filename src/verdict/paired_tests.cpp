@@ -38,8 +38,10 @@ PairedTest row_test(const Eigen::VectorXd& d, double level) {
     return finish(d.mean(), d.mean(), standard_error(d, {}, 0), static_cast<double>(d.size()) - 1, level);
 }
 
-PairedTest cluster_test(const Eigen::VectorXd& d, const std::vector<int>& cluster, std::size_t n_clusters, double level) {
-    return finish(d.mean(), d.mean(), standard_error(d, cluster, n_clusters), static_cast<double>(n_clusters) - 1, level);
+PairedTest cluster_test(const Eigen::VectorXd& d, const std::vector<int>& cluster, std::size_t n_clusters,
+                        double level) {
+    return finish(d.mean(), d.mean(), standard_error(d, cluster, n_clusters), static_cast<double>(n_clusters) - 1,
+                  level);
 }
 
 PairedTest corrected_test(const Eigen::VectorXd& s, int folds, double difference, double level) {
@@ -47,7 +49,8 @@ PairedTest corrected_test(const Eigen::VectorXd& s, int folds, double difference
     const double mean = s.mean();
     const bool varies = s.maxCoeff() > s.minCoeff();
     const double variance = varies ? (s.array() - mean).square().sum() / (splits - 1) : 0;
-    return finish(mean, difference, std::sqrt(variance * (1 / splits + 1 / static_cast<double>(folds - 1))), splits - 1, level);
+    return finish(mean, difference, std::sqrt(variance * (1 / splits + 1 / static_cast<double>(folds - 1))), splits - 1,
+                  level);
 }
 
 std::vector<double> holm(const std::vector<double>& p) {

@@ -23,8 +23,11 @@ void rank_contestants(const Trial& trial, Verdict& verdict) {
         if (!trial.contestants[c].failed) verdict.order.push_back(c);
     // Losses that differ by rounding alone are equal: file order decides, benchmarks last.
     const double grain = 1e-12 * trial.loss_scale();
-    const auto rounded = [&](std::size_t c) { return grain > 0 ? std::round(trial.contestants[c].loss / grain) : trial.contestants[c].loss; };
-    std::stable_sort(verdict.order.begin(), verdict.order.end(), [&](std::size_t a, std::size_t b) { return rounded(a) < rounded(b); });
+    const auto rounded = [&](std::size_t c) {
+        return grain > 0 ? std::round(trial.contestants[c].loss / grain) : trial.contestants[c].loss;
+    };
+    std::stable_sort(verdict.order.begin(), verdict.order.end(),
+                     [&](std::size_t a, std::size_t b) { return rounded(a) < rounded(b); });
     int rank = 0;
     for (const std::size_t c : verdict.order)
         if (trial.contestants[c].is_theory) verdict.theories[c].rank = ++rank;
@@ -40,8 +43,10 @@ PairReport compare(const Trial& trial, const Survey& survey, std::size_t a, std:
     const Eigen::VectorXd d = without_rounding(first.row_loss - second.row_loss, trial.loss_scale());
     pair.difference = d.mean();
     pair.relative = pair.difference / second.loss;
-    pair.rows = survey.clusters.empty() ? row_test(d, level) : cluster_test(d, survey.clusters, survey.cluster_names.size(), level);
-    pair.corrected = corrected_test(without_rounding(first.split_loss - second.split_loss, trial.loss_scale()), trial.folds, pair.difference, level);
+    pair.rows = survey.clusters.empty() ? row_test(d, level)
+                                        : cluster_test(d, survey.clusters, survey.cluster_names.size(), level);
+    pair.corrected = corrected_test(without_rounding(first.split_loss - second.split_loss, trial.loss_scale()),
+                                    trial.folds, pair.difference, level);
     pair.p = std::isnan(pair.rows.p) || std::isnan(pair.corrected.p) ? kNaN : std::max(pair.rows.p, pair.corrected.p);
     pair.p_holm = kNaN;
     pair.low = std::min(pair.rows.low, pair.corrected.low);
@@ -56,12 +61,15 @@ void adjust(std::vector<PairReport>& pairs) {
         const std::vector<double> adjusted = holm(p);
         for (std::size_t i = 0; i < pairs.size(); ++i) set(pairs[i], adjusted[i]);
     };
-    adjust_one([](const PairReport& pair) { return pair.rows.p; }, [](PairReport& pair, double p) { pair.rows.p_holm = p; });
-    adjust_one([](const PairReport& pair) { return pair.corrected.p; }, [](PairReport& pair, double p) { pair.corrected.p_holm = p; });
+    adjust_one([](const PairReport& pair) { return pair.rows.p; },
+               [](PairReport& pair, double p) { pair.rows.p_holm = p; });
+    adjust_one([](const PairReport& pair) { return pair.corrected.p; },
+               [](PairReport& pair, double p) { pair.corrected.p_holm = p; });
     adjust_one([](const PairReport& pair) { return pair.p; }, [](PairReport& pair, double p) { pair.p_holm = p; });
 }
 
-/// Two one-sided tests (Schuirmann 1987): the 1 - 2 level interval, the wider of the two tests', lies inside +-margin of the smaller loss.
+/// Two one-sided tests (Schuirmann 1987): the 1 - 2 level interval, the wider of the two tests', lies inside +-margin
+/// of the smaller loss.
 bool practically_equal(const Trial& trial, const PairReport& pair, const VerdictRules& rules) {
     const double allowed = rules.margin * std::min(trial.contestants[pair.a].loss, trial.contestants[pair.b].loss);
     double reach = 0;
@@ -94,7 +102,8 @@ void add_repeat_spread(const Trial& trial, PairReport& pair) {
     pair.monte_carlo_se = kNaN;
     if (trial.repeats < 2) return;
     const Eigen::VectorXd& b = trial.contestants[pair.b].repeat_loss;
-    pair.monte_carlo_se = standard_error(without_rounding(trial.contestants[pair.a].repeat_loss - b, trial.loss_scale()), {}, 0);
+    pair.monte_carlo_se =
+        standard_error(without_rounding(trial.contestants[pair.a].repeat_loss - b, trial.loss_scale()), {}, 0);
 }
 
 void share_first_places(const Trial& trial, Verdict& verdict) {
@@ -105,7 +114,8 @@ void share_first_places(const Trial& trial, Verdict& verdict) {
         std::vector<std::size_t> first;
         for (const std::size_t c : ranked)
             if (trial.contestants[c].repeat_loss(r) <= least + 1e-12 * trial.loss_scale()) first.push_back(c);
-        for (const std::size_t c : first) verdict.theories[c].first_share += 1.0 / (static_cast<double>(first.size()) * trial.repeats);
+        for (const std::size_t c : first)
+            verdict.theories[c].first_share += 1.0 / (static_cast<double>(first.size()) * trial.repeats);
     }
 }
 
@@ -114,8 +124,10 @@ void make_set(const Study& study, const Survey& survey, const Trial& trial, Verd
     for (std::size_t t = 0; t < trial.theories.size(); ++t)
         if (!trial.contestants[t].failed) verdict.set_members.push_back(t);
     if (verdict.set_members.empty()) return;
-    Eigen::MatrixXd losses(static_cast<Eigen::Index>(survey.n()), static_cast<Eigen::Index>(verdict.set_members.size()));
-    for (std::size_t k = 0; k < verdict.set_members.size(); ++k) losses.col(static_cast<Eigen::Index>(k)) = trial.contestants[verdict.set_members[k]].row_loss;
+    Eigen::MatrixXd losses(static_cast<Eigen::Index>(survey.n()),
+                           static_cast<Eigen::Index>(verdict.set_members.size()));
+    for (std::size_t k = 0; k < verdict.set_members.size(); ++k)
+        losses.col(static_cast<Eigen::Index>(k)) = trial.contestants[verdict.set_members[k]].row_loss;
     verdict.set = confidence_set(losses, survey.clusters, survey.cluster_names.size(), study.trial.seed);
     for (std::size_t k = 0; k < verdict.set_members.size(); ++k) {
         TheoryReport& theory = verdict.theories[verdict.set_members[k]];
@@ -129,10 +141,14 @@ void make_set(const Study& study, const Survey& survey, const Trial& trial, Verd
 
 const char* word(PairOutcome outcome) {
     switch (outcome) {
-        case PairOutcome::first_better: return "first predicts better";
-        case PairOutcome::second_better: return "second predicts better";
-        case PairOutcome::practically_equal: return "practically equal";
-        case PairOutcome::unresolved: return "unresolved";
+        case PairOutcome::first_better:
+            return "first predicts better";
+        case PairOutcome::second_better:
+            return "second predicts better";
+        case PairOutcome::practically_equal:
+            return "practically equal";
+        case PairOutcome::unresolved:
+            return "unresolved";
     }
     return "";
 }
@@ -165,7 +181,8 @@ Verdict reach_verdict(const Study& study, const Survey& survey, const Sample& sa
     const Eigen::VectorXd* first_weights = nullptr;
     for (std::size_t t = 0; t < trial.theories.size(); ++t) {
         if (trial.whole[t].failed) continue;
-        const Eigen::VectorXd& weights = trial.whole[t].fit.weights[static_cast<std::size_t>(trial.theories[t]->blueprint().target_block())];
+        const Eigen::VectorXd& weights =
+            trial.whole[t].fit.weights[static_cast<std::size_t>(trial.theories[t]->blueprint().target_block())];
         if (!first_weights) first_weights = &weights;
         if ((weights - *first_weights).cwiseAbs().maxCoeff() > 1e-8) verdict.several_targets = true;
     }

@@ -23,7 +23,9 @@ constexpr double kNugget = 1e-9;
 /// The rows of the draws, gathered.
 struct Rows {
     Eigen::MatrixXd values, gaps;
-    RowBlock block() const { return {values.data(), gaps.cols() > 0 ? gaps.data() : nullptr, values.rows(), values.rows()}; }
+    RowBlock block() const {
+        return {values.data(), gaps.cols() > 0 ? gaps.data() : nullptr, values.rows(), values.rows()};
+    }
 };
 
 Rows gather_rows(const Sample& sample, std::size_t most, std::uint64_t seed) {
@@ -39,7 +41,8 @@ Rows gather_rows(const Sample& sample, std::size_t most, std::uint64_t seed) {
 bool is_control(const Study& study, const Blueprint& plan, const DesignColumn& column) {
     if (column.kind != TermKind::score) return false;
     const std::string& construct = plan.blocks[static_cast<std::size_t>(column.blocks.front())].construct;
-    return std::any_of(study.controls.begin(), study.controls.end(), [&](const Name& control) { return control.text == construct; });
+    return std::any_of(study.controls.begin(), study.controls.end(),
+                       [&](const Name& control) { return control.text == construct; });
 }
 
 /// Mean 0, mean square 1; zeros if nothing varies.
@@ -49,7 +52,8 @@ void standardise(Eigen::Ref<Eigen::VectorXd> x) {
     if (size > 0) x /= size;
 }
 
-Eigen::MatrixXd antecedent_scores(const Study& study, const Trial& trial, const Rows& rows, std::vector<std::string>& names) {
+Eigen::MatrixXd antecedent_scores(const Study& study, const Trial& trial, const Rows& rows,
+                                  std::vector<std::string>& names) {
     std::vector<std::string> seen;
     Eigen::MatrixXd out(rows.values.rows(), 0);
     for (std::size_t t = 0; t < trial.theories.size(); ++t) {
@@ -74,7 +78,8 @@ Eigen::MatrixXd antecedent_scores(const Study& study, const Trial& trial, const 
     return out;
 }
 
-/// Standard normal numbers by the transformation of Box & Muller (1958, Annals of Mathematical Statistics 29(2), 610-611).
+/// Standard normal numbers by the transformation of Box & Muller (1958, Annals of Mathematical Statistics 29(2),
+/// 610-611).
 void fill_normal(RandomStream& stream, Eigen::Ref<Eigen::VectorXd> out) {
     for (Eigen::Index i = 0; i < out.size(); i += 2) {
         const double radius = std::sqrt(-2 * std::log(1 - stream.unit()));
@@ -99,7 +104,8 @@ Eigen::MatrixXd draw_outcomes(const Eigen::MatrixXd& scores, std::uint64_t seed)
     return out;
 }
 
-Restrictiveness restrict(const TheoryContestant& theory, const Fit& fit, const Rows& rows, const Eigen::MatrixXd& outcomes) {
+Restrictiveness restrict(const TheoryContestant& theory, const Fit& fit, const Rows& rows,
+                         const Eigen::MatrixXd& outcomes) {
     const Blueprint& plan = theory.blueprint();
     const EquationFit& fitted = fit.equations[static_cast<std::size_t>(plan.target_equation)];
     const auto c = static_cast<Eigen::Index>(fitted.active.size());
@@ -110,7 +116,8 @@ Restrictiveness restrict(const TheoryContestant& theory, const Fit& fit, const R
     sums.n = static_cast<double>(n);
     sums.scale.resize(c);
     for (Eigen::Index a = 0; a < c; ++a) {
-        const DesignColumn& column = plan.target_plan().columns[static_cast<std::size_t>(fitted.active[static_cast<std::size_t>(a)])];
+        const DesignColumn& column =
+            plan.target_plan().columns[static_cast<std::size_t>(fitted.active[static_cast<std::size_t>(a)])];
         theory.form_column(fit, column, rows.block(), scratch, design.col(a).data());
         design.col(a).array() -= fitted.sums.mean_x(a);
         sums.scale(a) = design.col(a).squaredNorm();
@@ -131,7 +138,8 @@ Restrictiveness restrict(const TheoryContestant& theory, const Fit& fit, const R
 
 }  // namespace
 
-RestrictivenessReport measure_restrictiveness(const Study& study, const Sample& sample, const Trial& trial, std::size_t most_rows) {
+RestrictivenessReport measure_restrictiveness(const Study& study, const Sample& sample, const Trial& trial,
+                                              std::size_t most_rows) {
     RestrictivenessReport out;
     out.theories.assign(trial.theories.size(), {kNaN, kNaN});
     const Rows rows = gather_rows(sample, most_rows, study.trial.seed);

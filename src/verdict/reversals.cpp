@@ -32,11 +32,14 @@ Reversal compare(const Outcome& first, const Outcome& second, std::size_t a, std
     const PairReport* one = find_pair(first.verdict, a, b, sign_first);
     const PairReport* two = find_pair(second.verdict, a, b, sign_second);
     if (!one || !two) {
-        out.difference_first = out.difference_second = out.difference = out.se = out.t = out.df = out.p = out.low = out.high = kNaN;
+        out.difference_first = out.difference_second = out.difference = out.se = out.t = out.df = out.p = out.low =
+            out.high = kNaN;
         out.reason = "a theory failed in one of the segments";
         return out;
     }
-    const auto wider = [](const PairReport& pair) -> const PairedTest& { return pair.rows.se >= pair.corrected.se ? pair.rows : pair.corrected; };
+    const auto wider = [](const PairReport& pair) -> const PairedTest& {
+        return pair.rows.se >= pair.corrected.se ? pair.rows : pair.corrected;
+    };
     const PairedTest &t1 = wider(*one), &t2 = wider(*two);
     out.difference_first = sign_first * one->difference;
     out.difference_second = sign_second * two->difference;
@@ -64,9 +67,11 @@ std::string in_words(const Outcome& whole, const Reversal& r) {
         return fmt::format("{:+.4f} in \"{}\"", difference, whole.segments[segment].segment_name);
     };
     const bool turns = (r.difference_first < 0) != (r.difference_second < 0);
-    return fmt::format("The segments differ: loss of \"{}\" minus loss of \"{}\" is {} and {} (difference {:+.4f}, interval {:+.4f} to {:+.4f}, Holm-adjusted {}){}", a, b,
-                       side(r.difference_first, r.first), side(r.difference_second, r.second), r.difference, r.low, r.high, p_words(r.p_holm),
-                       turns ? "; the order of the two turns round." : "; the order of the two stays.");
+    return fmt::format(
+        "The segments differ: loss of \"{}\" minus loss of \"{}\" is {} and {} (difference {:+.4f}, interval {:+.4f} "
+        "to {:+.4f}, Holm-adjusted {}){}",
+        a, b, side(r.difference_first, r.first), side(r.difference_second, r.second), r.difference, r.low, r.high,
+        p_words(r.p_holm), turns ? "; the order of the two turns round." : "; the order of the two stays.");
 }
 
 }  // namespace

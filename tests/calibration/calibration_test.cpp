@@ -1,5 +1,6 @@
-// A small cut of the calibration table. Every bound is one that a broken rule fails, and the tests show it: what the split-level t test, the
-// row test alone and a study without `cluster` do to the same samples. Acceptance: at most 5.5% + 2 Monte Carlo errors of false winners.
+// A small cut of the calibration table. Every bound is one that a broken rule fails, and the tests show it: what the
+// split-level t test, the row test alone and a study without `cluster` do to the same samples. Acceptance: at most 5.5%
+// + 2 Monte Carlo errors of false winners.
 #include "calibration/rates.hpp"
 #include "calibration/simulation.hpp"
 #include "support/catch.hpp"
@@ -22,11 +23,14 @@ Cell cell_named(const std::string& name) {
     return *found;
 }
 
-CellResult simulated(const std::string& name, std::uint32_t samples = kSamples) { return run_cell(cell_named(name), 1, samples, 1, kTrainingSets); }
+CellResult simulated(const std::string& name, std::uint32_t samples = kSamples) {
+    return run_cell(cell_named(name), 1, samples, 1, kTrainingSets);
+}
 
 }  // namespace
 
-TEST_CASE("of two exchangeable theories one is named the winner in at most 5.5% of samples, but not never", "[calibration]") {
+TEST_CASE("of two exchangeable theories one is named the winner in at most 5.5% of samples, but not never",
+          "[calibration]") {
     const Rates rates = rates_of(simulated("exchangeable; normal; n = 100"));
     CHECK(rates.not_fitted == 0);
     CHECK(rates.wrong_winner.value <= false_winner_bound(kSamples));
@@ -38,7 +42,8 @@ TEST_CASE("of two exchangeable theories one is named the winner in at most 5.5% 
 }
 
 // Clark & West 2007 (Journal of Econometrics 138, 291-311): at equal expected loss the outer theory's term is real.
-TEST_CASE("at equal expected loss the verdict names no nested theory that the row test alone would name", "[calibration]") {
+TEST_CASE("at equal expected loss the verdict names no nested theory that the row test alone would name",
+          "[calibration]") {
     const CellResult result = simulated("nested, one weak term; normal; n = 200");
     REQUIRE(result.tuned);
     CHECK((*result.tuned > 0.01 && *result.tuned < 0.1));
@@ -69,12 +74,14 @@ TEST_CASE("four theories that tie: seldom a winner, and the confidence set by T_
     CHECK(rates.max_keeps.value > rates.range_keeps.value);
 }
 
-TEST_CASE("a true difference is found, by the right theory, and its interval holds the simulated truth", "[calibration]") {
+TEST_CASE("a true difference is found, by the right theory, and its interval holds the simulated truth",
+          "[calibration]") {
     const CellResult result = simulated("difference, .5 against .3; normal; n = 500", 200);
     const Rates rates = rates_of(result);
     CHECK(rates.right_winner.value > 0.3);
     CHECK(rates.wrong_winner.value == 0);
     CHECK(rates.coverage.value >= 0.90);
     // Cross-validation is unbiased for training sets of its own size: two ways to the same number.
-    CHECK(std::fabs(rates.difference.value - result.truth.difference[0]) < 4 * std::hypot(rates.difference.se, result.truth.difference_se[0]));
+    CHECK(std::fabs(rates.difference.value - result.truth.difference[0]) <
+          4 * std::hypot(rates.difference.se, result.truth.difference_se[0]));
 }

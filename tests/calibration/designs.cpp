@@ -17,8 +17,8 @@ constexpr std::size_t kGroup = 10;
 constexpr double kGroupShare = 0.5;  // of variance: the intraclass correlation
 constexpr double kMargin = 0.02;
 
-/// Draws of mean 0 and variance 1: normal (Box & Muller 1958, Annals of Mathematical Statistics 29, 610-611), or Student's t with 4
-/// degrees of freedom, a normal over the root of a chi-squared that is -2 ln(u u') for two uniforms.
+/// Draws of mean 0 and variance 1: normal (Box & Muller 1958, Annals of Mathematical Statistics 29, 610-611), or
+/// Student's t with 4 degrees of freedom, a normal over the root of a chi-squared that is -2 ln(u u') for two uniforms.
 class Draws {
 public:
     Draws(RandomStream& stream, bool heavy) : stream_(stream), heavy_(heavy) {}
@@ -49,7 +49,8 @@ private:
 /// One latent draw per component and row; in a clustered design partly shared within the group.
 class Latent {
 public:
-    Latent(const Design& design, Draws& draws, std::size_t components) : design_(design), draws_(draws), shared_(components) {}
+    Latent(const Design& design, Draws& draws, std::size_t components)
+        : design_(design), draws_(draws), shared_(components) {}
     void open_row(std::size_t row) {
         if (design_.clustered && row % kGroup == 0)
             for (double& value : shared_) value = draws_.next();
@@ -115,14 +116,16 @@ Design aimed(Design design, Aim aim, std::vector<std::size_t> best) {
 Design four_theories(std::size_t tied) {
     std::vector<double> effects(4, 0.1);
     std::fill_n(effects.begin(), tied, 0.3);
-    Design design = symmetric(two_theories(fmt::format("four theories, {} tied", tied), std::move(effects), {"x1", "x2", "x3", "x4"}));
+    Design design = symmetric(
+        two_theories(fmt::format("four theories, {} tied", tied), std::move(effects), {"x1", "x2", "x3", "x4"}));
     design.best.clear();
     for (std::size_t t = 0; t < tied; ++t) design.best.push_back(t);
     return design;
 }
 
 Design clustered(bool declared) {
-    Design design = symmetric(two_theories(declared ? "clusters of 10" : "clusters of 10, not declared", {0.4, 0.4}, {"x1", "x2"}));
+    Design design =
+        symmetric(two_theories(declared ? "clusters of 10" : "clusters of 10, not declared", {0.4, 0.4}, {"x1", "x2"}));
     design.clustered = true;
     design.cluster_declared = declared;
     return design;
@@ -132,9 +135,12 @@ Design clustered(bool declared) {
 
 const char* word(Items items) {
     switch (items) {
-        case Items::normal: return "normal";
-        case Items::heavy_tailed: return "heavy-tailed";
-        case Items::seven_point: return "seven-point";
+        case Items::normal:
+            return "normal";
+        case Items::heavy_tailed:
+            return "heavy-tailed";
+        case Items::seven_point:
+            return "seven-point";
     }
     return "";
 }
@@ -153,37 +159,57 @@ std::vector<Cell> all_cells() {
     };
     add(symmetric(two_theories("exchangeable", {0.4, 0.4}, {"x1", "x2"})), every, sizes);
     add(symmetric(two_theories("overlapping", {0.4, 0.3, 0.3}, {"x1, x2", "x1, x3"})), every, sizes);
-    add(tuned_to(two_theories("nested, one weak term", {0.5, 0.3, 0}, {"x1, x2", "x1, x2, x3"}), Tuned::extra_effects, 2), every, sizes);
-    add(tuned_to(two_theories("nested, three weak terms", {0.4, 0.3, 0, 0, 0}, {"x1, x2", "x1, x2, x3, x4, x5"}), Tuned::extra_effects, 2), every, sizes);
-    add(tuned_to(two_theories("nested, weak product", {0.4, 0.4}, {"x1, x2", "{crossed: [x1, x2]}"}), Tuned::product, 0), bounded, sizes);
+    add(tuned_to(two_theories("nested, one weak term", {0.5, 0.3, 0}, {"x1, x2", "x1, x2, x3"}), Tuned::extra_effects,
+                 2),
+        every, sizes);
+    add(tuned_to(two_theories("nested, three weak terms", {0.4, 0.3, 0, 0, 0}, {"x1, x2", "x1, x2, x3, x4, x5"}),
+                 Tuned::extra_effects, 2),
+        every, sizes);
+    add(tuned_to(two_theories("nested, weak product", {0.4, 0.4}, {"x1, x2", "{crossed: [x1, x2]}"}), Tuned::product,
+                 0),
+        bounded, sizes);
     add(clustered(true), every, from_100);
     const std::uint32_t same_samples = stream - 9;
     add(clustered(false), normal, from_100);
     for (std::uint32_t back = 1; back <= 3; ++back) cells[cells.size() - back].stream = same_samples + 4 - back;
     for (std::size_t tied = 2; tied <= 4; ++tied) add(four_theories(tied), tied == 4 ? every : normal, sizes);
-    Design nested_four = tuned_to(two_theories("four theories, three nest the first", {0.5, 0, 0, 0}, {"x1", "x1, x2", "x1, x3", "x1, x4"}), Tuned::extra_effects, 1);
+    Design nested_four = tuned_to(
+        two_theories("four theories, three nest the first", {0.5, 0, 0, 0}, {"x1", "x1, x2", "x1, x3", "x1, x4"}),
+        Tuned::extra_effects, 1);
     nested_four.best = {0, 1, 2, 3};
     add(nested_four, normal, sizes);
 
-    add(aimed(two_theories("difference, .5 against .3", {0.5, 0.3}, {"x1", "x2"}), Aim::alternative, {0}), every, sizes);
-    Design interaction = aimed(two_theories("interaction that explains 4%", {0.4, 0.4}, {"x1, x2", "{crossed: [x1, x2]}"}), Aim::alternative, {});
+    add(aimed(two_theories("difference, .5 against .3", {0.5, 0.3}, {"x1", "x2"}), Aim::alternative, {0}), every,
+        sizes);
+    Design interaction =
+        aimed(two_theories("interaction that explains 4%", {0.4, 0.4}, {"x1, x2", "{crossed: [x1, x2]}"}),
+              Aim::alternative, {});
     interaction.product = 0.2 / std::sqrt(1 + interaction.correlation * interaction.correlation);
     add(interaction, bounded, sizes);
-    add(aimed(two_theories("extra term is noise", {0.5, 0.3, 0}, {"x1, x2", "x1, x2, x3"}), Aim::alternative, {0}), normal, sizes);
+    add(aimed(two_theories("extra term is noise", {0.5, 0.3, 0}, {"x1, x2", "x1, x2, x3"}), Aim::alternative, {0}),
+        normal, sizes);
 
-    Design alike = symmetric(aimed(two_theories("equal, correlated .95", {0.3, 0.3}, {"x1", "x2"}), Aim::equality, {0, 1}));
+    Design alike =
+        symmetric(aimed(two_theories("equal, correlated .95", {0.3, 0.3}, {"x1", "x2"}), Aim::equality, {0, 1}));
     alike.correlation = 0.95;
     add(alike, normal, from_100);
-    add(tuned_to(aimed(two_theories("difference of the margin", {0.6, 0}, {"x1", "x2"}), Aim::equality, {0}), Tuned::correlation, 0, kMargin), normal, from_100);
-    add(tuned_to(aimed(two_theories("product worth the margin", {0.4, 0.4}, {"x1, x2", "{crossed: [x1, x2]}"}), Aim::equality, {1}), Tuned::product, 0, -kMargin), normal, from_200);
+    add(tuned_to(aimed(two_theories("difference of the margin", {0.6, 0}, {"x1", "x2"}), Aim::equality, {0}),
+                 Tuned::correlation, 0, kMargin),
+        normal, from_100);
+    add(tuned_to(aimed(two_theories("product worth the margin", {0.4, 0.4}, {"x1, x2", "{crossed: [x1, x2]}"}),
+                       Aim::equality, {1}),
+                 Tuned::product, 0, -kMargin),
+        normal, from_200);
     return cells;
 }
 
 std::string study_text(const Cell& cell) {
     const Design& design = cell.design;
     std::string text = "study: a simulated survey with a known truth\n";
-    text += fmt::format("data: {{file: simulated.csv{}}}\nconstructs:\n", design.clustered && design.cluster_declared ? ", cluster: group" : "");
-    for (std::size_t a = 1; a <= design.effects.size(); ++a) text += fmt::format("  x{0}: {{indicators: [x{0}_1, x{0}_2, x{0}_3]}}\n", a);
+    text += fmt::format("data: {{file: simulated.csv{}}}\nconstructs:\n",
+                        design.clustered && design.cluster_declared ? ", cluster: group" : "");
+    for (std::size_t a = 1; a <= design.effects.size(); ++a)
+        text += fmt::format("  x{0}: {{indicators: [x{0}_1, x{0}_2, x{0}_3]}}\n", a);
     text += "  outcome: {indicators: [outcome_1, outcome_2, outcome_3]}\ntarget: outcome\ntheories:\n";
     for (std::size_t t = 0; t < design.theories.size(); ++t)
         text += fmt::format("  - {{name: theory {}, equations: {{outcome: [{}]}}}}\n", t + 1, design.theories[t]);
@@ -192,7 +218,8 @@ std::string study_text(const Cell& cell) {
 
 Design with_tuned(const Design& design, double value) {
     Design out = design;
-    if (design.tuned == Tuned::extra_effects) std::fill(out.effects.begin() + static_cast<std::ptrdiff_t>(design.extra_from), out.effects.end(), value);
+    if (design.tuned == Tuned::extra_effects)
+        std::fill(out.effects.begin() + static_cast<std::ptrdiff_t>(design.extra_from), out.effects.end(), value);
     if (design.tuned == Tuned::product) out.product = value;
     if (design.tuned == Tuned::correlation) out.correlation = value;
     return out;
@@ -201,7 +228,8 @@ Design with_tuned(const Design& design, double value) {
 Table simulate(const Cell& cell, const Study& study, std::size_t rows, RandomStream& stream) {
     const Design& design = cell.design;
     const std::size_t n_antecedents = design.effects.size();
-    const double spread = disturbance_deviation(design), shared = std::sqrt(design.correlation), own = std::sqrt(1 - design.correlation);
+    const double spread = disturbance_deviation(design), shared = std::sqrt(design.correlation),
+                 own = std::sqrt(1 - design.correlation);
     const double item_error = std::sqrt(1 - kLoading * kLoading);
     Draws draws(stream, cell.items == Items::heavy_tailed);
     Latent latent(design, draws, n_antecedents + 2);
@@ -229,7 +257,8 @@ Table simulate(const Cell& cell, const Study& study, std::size_t rows, RandomStr
     table.n_rows = rows;
     table.numbers.resize(static_cast<Eigen::Index>(rows), static_cast<Eigen::Index>(table.chosen.numbers.size()));
     for (std::size_t k = 0; k < table.chosen.numbers.size(); ++k)
-        table.numbers.col(static_cast<Eigen::Index>(k)) = answers.col(static_cast<Eigen::Index>(table.chosen.numbers[k]));
+        table.numbers.col(static_cast<Eigen::Index>(k)) =
+            answers.col(static_cast<Eigen::Index>(table.chosen.numbers[k]));
     for (std::size_t k = 0; k < table.chosen.texts.size(); ++k) {
         table.texts.emplace_back();
         for (std::size_t row = 0; row < rows; ++row) table.texts.back().push_back(std::to_string(row / kGroup));

@@ -1,5 +1,5 @@
-// Which simulated surveys should the verdict be judged on? Each cell is a survey with a known truth: how its rows come about, which
-// theories compete for it, and which of them is best. Knows nothing of losses, tests or rates.
+// Which simulated surveys should the verdict be judged on? Each cell is a survey with a known truth: how its rows come
+// about, which theories compete for it, and which of them is best. Knows nothing of losses, tests or rates.
 #pragma once
 
 #include "rivalfold/data/table.hpp"
@@ -16,15 +16,16 @@ namespace rivalfold::calibration {
 enum class Items { normal, heavy_tailed, seven_point };
 const char* word(Items);
 
-/// What a cell shows: at equal expected loss any winner is false; otherwise one theory is truly better; or the question is equality.
+/// What a cell shows: at equal expected loss any winner is false; otherwise one theory is truly better; or the question
+/// is equality.
 enum class Aim { null, alternative, equality };
 
-/// A number of the design that is found by root finding, so that the second theory's expected held-out loss exceeds the first's by
-/// `Design::wanted` times the smaller of the two.
+/// A number of the design that is found by root finding, so that the second theory's expected held-out loss exceeds the
+/// first's by `Design::wanted` times the smaller of the two.
 enum class Tuned { nothing, extra_effects, product, correlation };
 
-/// Antecedents x1, x2, ... with equal correlations, variances 1; outcome = sum of effects x antecedent + product x (x1 x2) + disturbance,
-/// variance about 1. Three items each, loading .8.
+/// Antecedents x1, x2, ... with equal correlations, variances 1; outcome = sum of effects x antecedent + product x (x1
+/// x2) + disturbance, variance about 1. Three items each, loading .8.
 struct Design {
     std::string name;
     Aim aim = Aim::null;
@@ -32,13 +33,15 @@ struct Design {
     double product = 0;
     double correlation = 0.3;
     std::vector<std::string> theories;  ///< the right-hand side of the outcome's equation, as in a study file
-    std::vector<std::size_t> best;      ///< the theories of the smallest expected loss, if known from symmetry or tuning; else empty
-    bool symmetric = false;             ///< the best ones are equal by symmetry: their differences are exactly 0
+    std::vector<std::size_t>
+        best;  ///< the theories of the smallest expected loss, if known from symmetry or tuning; else empty
+    bool symmetric = false;  ///< the best ones are equal by symmetry: their differences are exactly 0
     Tuned tuned = Tuned::nothing;
-    std::size_t extra_from = 0;         ///< the effects from this one on are the tuned ones (extra_effects)
-    double wanted = 0;                  ///< relative difference in expected loss to tune to
-    bool clustered = false;             ///< rows come in groups of 10; half of the variance of antecedents and disturbance is the group's
-    bool cluster_declared = true;       ///< the study says `cluster`
+    std::size_t extra_from = 0;  ///< the effects from this one on are the tuned ones (extra_effects)
+    double wanted = 0;           ///< relative difference in expected loss to tune to
+    bool clustered =
+        false;  ///< rows come in groups of 10; half of the variance of antecedents and disturbance is the group's
+    bool cluster_declared = true;  ///< the study says `cluster`
 };
 
 struct Cell {

@@ -87,8 +87,11 @@ TEST_CASE("items have a loading of .8 on a construct of variance 1, the outcome 
     }
 }
 
-TEST_CASE("heavy tails are those of Student's t with 4 degrees of freedom, seven-point items are whole numbers from 1 to 7", "[calibration]") {
-    // Of independent t items (effects 0 leave each item .8 t + .6 t'): far more rows beyond 4 deviations than the normal's 6 in 100,000.
+TEST_CASE(
+    "heavy tails are those of Student's t with 4 degrees of freedom, seven-point items are whole numbers from 1 to 7",
+    "[calibration]") {
+    // Of independent t items (effects 0 leave each item .8 t + .6 t'): far more rows beyond 4 deviations than the
+    // normal's 6 in 100,000.
     const Table heavy = table_of(cell_of(design_named("exchangeable"), Items::heavy_tailed), 40000);
     const Table normal = table_of(cell_of(design_named("exchangeable")), 40000);
     CHECK((heavy.numbers.array().abs() > 4).cast<double>().mean() > 0.002);
@@ -114,7 +117,8 @@ TEST_CASE("half of the variance of a clustered antecedent belongs to groups of t
     CHECK(table_of(cell_of(design_named("clusters of 10, not declared")), 20).texts.empty());
 }
 
-TEST_CASE("cells have names of their own, and samples of their own except for the clusters that are not declared", "[calibration]") {
+TEST_CASE("cells have names of their own, and samples of their own except for the clusters that are not declared",
+          "[calibration]") {
     std::set<std::string> names;
     std::set<std::uint32_t> streams;
     std::size_t shared = 0, cells = 0;
@@ -136,7 +140,8 @@ TEST_CASE("cells have names of their own, and samples of their own except for th
         return 0U;
     };
     for (const int n : {100, 200, 500})
-        CHECK(stream_of("clusters of 10; normal; n = " + std::to_string(n)) == stream_of("clusters of 10, not declared; normal; n = " + std::to_string(n)));
+        CHECK(stream_of("clusters of 10; normal; n = " + std::to_string(n)) ==
+              stream_of("clusters of 10, not declared; normal; n = " + std::to_string(n)));
 }
 
 TEST_CASE("a sample depends on its seed, its cell and its number, not on threads", "[calibration]") {
@@ -186,7 +191,8 @@ TEST_CASE("a cell that breaks a bound says which, with the number", "[calibratio
     CHECK(shortcomings(cell, rates).empty());
     rates.wrong_winner = {0.08, 0.009};
     rates.coverage = {0.92, 0.008};
-    CHECK(shortcomings(cell, rates) == std::vector<std::string>{"false winner 8.0%", "coverage 92.0%, within 2 Monte Carlo errors"});
+    CHECK(shortcomings(cell, rates) ==
+          std::vector<std::string>{"false winner 8.0%", "coverage 92.0%, within 2 Monte Carlo errors"});
     rates.wrong_winner = {0.001, 0.001};
     rates.coverage = {0.95, 0.007};
     CHECK(shortcomings(cell, rates) == std::vector<std::string>{"timid: false winner 0.1%"});

@@ -57,7 +57,8 @@ PairJudgement judge_pair(const PairReport& report, const Trial& trial) {
 
 Judgement judge(const Study& study, const Survey& survey, const Sample& sample, const Trial& trial) {
     Judgement out;
-    for (std::size_t t = 0; t < study.theories.size(); ++t) out.failed = out.failed || trial.contestants[t].failed || trial.whole[t].failed;
+    for (std::size_t t = 0; t < study.theories.size(); ++t)
+        out.failed = out.failed || trial.contestants[t].failed || trial.whole[t].failed;
     if (out.failed) return out;
     const Verdict verdict = reach_verdict(study, survey, sample, trial);
     out.winner = verdict.winner;
@@ -65,8 +66,9 @@ Judgement judge(const Study& study, const Survey& survey, const Sample& sample, 
         if (trial.contestants[c].is_theory) out.ranked.push_back(c);
     for (const PairReport& report : verdict.pairs)
         if (report.theories) out.pairs.push_back(judge_pair(report, trial));
-    std::sort(out.pairs.begin(), out.pairs.end(),
-              [](const PairJudgement& a, const PairJudgement& b) { return std::pair(a.first, a.second) < std::pair(b.first, b.second); });
+    std::sort(out.pairs.begin(), out.pairs.end(), [](const PairJudgement& a, const PairJudgement& b) {
+        return std::pair(a.first, a.second) < std::pair(b.first, b.second);
+    });
     for (const TheoryReport& theory : verdict.theories) {
         out.p_set_range.push_back(theory.p_set_range);
         out.p_set_max.push_back(theory.p_set_max);
@@ -97,7 +99,8 @@ std::vector<double> losses_of_large_sample(const Cell& cell, const Study& study,
     std::vector<double> losses(study.theories.size(), 0);
     int fitted = 0;
     for (Eigen::Index split = 0; split < 2 * plan.repeats; split += 2) {
-        // Weights that do not settle, in a few of a thousand small training sets, leave the split without a loss: that set is left out.
+        // Weights that do not settle, in a few of a thousand small training sets, leave the split without a loss: that
+        // set is left out.
         bool all = true;
         for (std::size_t t = 0; t < losses.size(); ++t) all = all && trial.contestants[t].split_loss(split) > 0;
         if (!all) continue;
@@ -132,10 +135,12 @@ void share_out(std::size_t count, unsigned threads, const Task& task) {
     if (error) std::rethrow_exception(error);
 }
 
-ExpectedLosses simulate_losses(const Cell& cell, std::uint64_t seed, Part part, std::size_t training_sets, unsigned threads) {
+ExpectedLosses simulate_losses(const Cell& cell, std::uint64_t seed, Part part, std::size_t training_sets,
+                               unsigned threads) {
     const Study study = study_of(cell);
     const std::size_t block = static_cast<std::size_t>(cell.rows) * 9 / 10;
-    const std::size_t large_samples = std::max<std::size_t>(2, training_sets / std::max<std::size_t>(1000 / block + 1, 6));
+    const std::size_t large_samples =
+        std::max<std::size_t>(2, training_sets / std::max<std::size_t>(1000 / block + 1, 6));
     std::vector<std::vector<double>> losses(large_samples);
     share_out(large_samples, threads, [&](std::size_t number) {
         RandomStream stream = stream_of(cell, seed, part, static_cast<std::uint32_t>(number));
@@ -147,11 +152,13 @@ ExpectedLosses simulate_losses(const Cell& cell, std::uint64_t seed, Part part, 
         return sum / static_cast<double>(large_samples);
     };
     ExpectedLosses out;
-    for (std::size_t t = 0; t < study.theories.size(); ++t) out.loss.push_back(mean_of([t](const std::vector<double>& one) { return one[t]; }));
+    for (std::size_t t = 0; t < study.theories.size(); ++t)
+        out.loss.push_back(mean_of([t](const std::vector<double>& one) { return one[t]; }));
     for (std::size_t a = 0; a < study.theories.size(); ++a)
         for (std::size_t b = a + 1; b < study.theories.size(); ++b) {
             const double mean = out.loss[a] - out.loss[b];
-            const double variance = mean_of([&](const std::vector<double>& one) { return (one[a] - one[b] - mean) * (one[a] - one[b] - mean); });
+            const double variance = mean_of(
+                [&](const std::vector<double>& one) { return (one[a] - one[b] - mean) * (one[a] - one[b] - mean); });
             out.difference.push_back(mean);
             out.difference_se.push_back(std::sqrt(variance / static_cast<double>(large_samples - 1)));
         }
@@ -170,7 +177,8 @@ double tune_in(const Cell& cell, std::uint64_t seed, std::size_t training_sets, 
     double low = 0, high = cell.design.tuned == Tuned::extra_effects ? 0.06 : 0.16;
     if (cell.design.tuned == Tuned::correlation) low = 0.64, high = 0.998;
     double at_low = excess(low), at_high = excess(high);
-    if (!(at_low > 0 && at_high < 0)) throw std::runtime_error(cell.name() + ": the tuned number lies outside its range");
+    if (!(at_low > 0 && at_high < 0))
+        throw std::runtime_error(cell.name() + ": the tuned number lies outside its range");
     double root = low;
     int side = 0;
     for (int step = 0; step < 25; ++step) {
@@ -210,9 +218,12 @@ ExpectedLosses expected_losses(const Cell& cell, std::uint64_t seed, Part part, 
     return simulate_losses(cell, seed, part, training_sets, 1);
 }
 
-double tune(const Cell& cell, std::uint64_t seed, std::size_t training_sets) { return tune_in(cell, seed, training_sets, 1); }
+double tune(const Cell& cell, std::uint64_t seed, std::size_t training_sets) {
+    return tune_in(cell, seed, training_sets, 1);
+}
 
-CellResult run_cell(const Cell& cell, std::uint64_t seed, std::uint32_t samples, unsigned threads, std::size_t training_sets) {
+CellResult run_cell(const Cell& cell, std::uint64_t seed, std::uint32_t samples, unsigned threads,
+                    std::size_t training_sets) {
     CellResult result;
     result.cell = cell;
     if (cell.design.tuned != Tuned::nothing) {
@@ -233,7 +244,9 @@ CellResult run_cell(const Cell& cell, std::uint64_t seed, std::uint32_t samples,
     }
     const std::clock_t begun = std::clock();
     result.judgements.resize(samples);
-    share_out(samples, threads, [&](std::size_t number) { result.judgements[number] = judge_sample(result.cell, seed, static_cast<std::uint32_t>(number)); });
+    share_out(samples, threads, [&](std::size_t number) {
+        result.judgements[number] = judge_sample(result.cell, seed, static_cast<std::uint32_t>(number));
+    });
     result.seconds_per_sample = static_cast<double>(std::clock() - begun) / CLOCKS_PER_SEC / samples;
     return result;
 }

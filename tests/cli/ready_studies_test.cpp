@@ -1,4 +1,5 @@
-// The studies that come with the program: every theory set of models/ is read and says where it comes from and when it fits.
+// The studies that come with the program: every theory set of models/ is read and says where it comes from and when it
+// fits.
 #include "support/catch.hpp"
 
 #include "rivalfold/study/fault.hpp"
@@ -29,7 +30,8 @@ std::string head_comment(const fs::path& file) {
     std::ifstream in(file);
     std::string head;
     for (std::string line; std::getline(in, line) && !line.empty() && line.front() == '#';) head += line + "\n";
-    std::transform(head.begin(), head.end(), head.begin(), [](unsigned char c) { return static_cast<char>(std::tolower(c)); });
+    std::transform(head.begin(), head.end(), head.begin(),
+                   [](unsigned char c) { return static_cast<char>(std::tolower(c)); });
     return head;
 }
 
@@ -43,7 +45,8 @@ TEST_CASE("every theory set of models/ is read without a fault", "[cli]") {
         try {
             const rivalfold::Study study = rivalfold::read_study(file.string());
             CHECK(study.theories.size() >= 2);
-            CHECK(std::all_of(study.theories.begin(), study.theories.end(), [](const auto& theory) { return !theory.claim.empty(); }));
+            CHECK(std::all_of(study.theories.begin(), study.theories.end(),
+                              [](const auto& theory) { return !theory.claim.empty(); }));
         } catch (const rivalfold::FaultError& error) {
             FAIL_CHECK(error.what());
         }
@@ -61,7 +64,10 @@ TEST_CASE("every theory set of models/ names its purpose, when it fits, and a pu
         // A year in brackets, as every reference has.
         bool dated = false;
         for (std::size_t at = head.find('(', source); at != std::string::npos; at = head.find('(', at + 1))
-            dated = dated || (head.size() > at + 5 && head[at + 5] == ')' && std::all_of(head.begin() + static_cast<std::ptrdiff_t>(at) + 1, head.begin() + static_cast<std::ptrdiff_t>(at) + 5, [](unsigned char c) { return std::isdigit(c) != 0; }));
+            dated = dated || (head.size() > at + 5 && head[at + 5] == ')' &&
+                              std::all_of(head.begin() + static_cast<std::ptrdiff_t>(at) + 1,
+                                          head.begin() + static_cast<std::ptrdiff_t>(at) + 5,
+                                          [](unsigned char c) { return std::isdigit(c) != 0; }));
         CHECK(dated);
     }
 }

@@ -56,8 +56,13 @@ bool same_cells(const Rows& expected, const Table& table) {
 
 /// A rectangular table of tricky cells written with random quotes, blanks and line ends.
 std::string random_table(std::mt19937& random, char delimiter) {
-    const std::vector<std::string> pieces = {"",   "1", "a b", "x\"\"y", "\n", "\r\n", "\r", std::string(1, delimiter), ",",
-                                             "\"\"", " ", "7.5", "\xC3\xA9", "long text of some words"};
+    const std::vector<std::string> pieces = {"",         "1",
+                                             "a b",      "x\"\"y",
+                                             "\n",       "\r\n",
+                                             "\r",       std::string(1, delimiter),
+                                             ",",        "\"\"",
+                                             " ",        "7.5",
+                                             "\xC3\xA9", "long text of some words"};
     const std::vector<std::string> ends = {"\n", "\r\n", "\r"};
     const std::size_t n_columns = 2 + random() % 4;
     const std::size_t n_rows = 2 + random() % 6;
@@ -85,11 +90,11 @@ std::string random_table(std::mt19937& random, char delimiter) {
 }  // namespace
 
 TEST_CASE("tricky texts give the cells that libcsv finds", "[data]") {
-    for (const std::string text : {
-             "a,b\n1,2\n", "a,b\r\n\"1\",\"2\"\r\n", "a,b\n\"x\"\"y\",\"\"\"\"\n", "a,b\n\"x\ny\",\"z,z\"\n",
-             "a,b\n\"\",\n", "a,b\n,\n", "a,b\n 1 ,\t2\t\n", "a,b\n5\" pipe,a\"b\"c\n", "a,b\n\n\n1,2\n\n",
-             "a,b\r1,2\r\r3,4\r", "a,b\n \"quoted\" , \"after blanks\"\n", "a,b\n1,2", "a,b\n1,\"2\"", "a,b\n1,",
-             "a,b\n\"ends\r\",\"\r\nstarts\"\n", "a,b\n\"\"\"\"\"\",\"\"\"a\"\"\"\n"}) {
+    for (const std::string text :
+         {"a,b\n1,2\n", "a,b\r\n\"1\",\"2\"\r\n", "a,b\n\"x\"\"y\",\"\"\"\"\n", "a,b\n\"x\ny\",\"z,z\"\n",
+          "a,b\n\"\",\n", "a,b\n,\n", "a,b\n 1 ,\t2\t\n", "a,b\n5\" pipe,a\"b\"c\n", "a,b\n\n\n1,2\n\n",
+          "a,b\r1,2\r\r3,4\r", "a,b\n \"quoted\" , \"after blanks\"\n", "a,b\n1,2", "a,b\n1,\"2\"", "a,b\n1,",
+          "a,b\n\"ends\r\",\"\r\nstarts\"\n", "a,b\n\"\"\"\"\"\",\"\"\"a\"\"\"\n"}) {
         CAPTURE(text);
         Rows expected;
         REQUIRE(oracle_rows(text, ',', expected));

@@ -16,12 +16,14 @@ TEST_CASE("a decimal comma in a comma-delimited file is explained", "[data]") {
 }
 
 TEST_CASE("infinite and enormous numbers are faults", "[data]") {
-    CHECK(faults_in("a,b\ninf,1\n2,-1e101\n1e999,3\n") ==
-          "t.csv: row 1, column \"a\": \"inf\" is infinite; if it means \"no answer\", add it to missing_codes\n"
-          "t.csv: row 2, column \"b\": \"-1e101\" is enormous (above 1e100 in size); if it means \"no answer\", add it to "
-          "missing_codes\n"
-          "t.csv: row 3, column \"a\": \"1e999\" is enormous (above 1e100 in size); if it means \"no answer\", add it to "
-          "missing_codes");
+    CHECK(
+        faults_in("a,b\ninf,1\n2,-1e101\n1e999,3\n") ==
+        "t.csv: row 1, column \"a\": \"inf\" is infinite; if it means \"no answer\", add it to missing_codes\n"
+        "t.csv: row 2, column \"b\": \"-1e101\" is enormous (above 1e100 in size); if it means \"no answer\", add it "
+        "to "
+        "missing_codes\n"
+        "t.csv: row 3, column \"a\": \"1e999\" is enormous (above 1e100 in size); if it means \"no answer\", add it to "
+        "missing_codes");
 }
 
 TEST_CASE("a fast-path number above 1e100 cannot slip through", "[data]") {
@@ -31,8 +33,9 @@ TEST_CASE("a fast-path number above 1e100 cannot slip through", "[data]") {
 TEST_CASE("a column that mixes decimal points and commas is a fault", "[data]") {
     CHECK(faults_in("a;b\n1,5;2,5\n2.5;1,5\n") ==
           "t.csv: column \"a\": mixes a decimal point (row 2) and a decimal comma (row 1); use one of them");
-    CHECK(faults_in("a;b\n1.234,5;2\n") ==
-          "t.csv: row 1, column \"a\": \"1.234,5\" is not a number; if it means \"no answer\", add it to missing_codes");
+    CHECK(
+        faults_in("a;b\n1.234,5;2\n") ==
+        "t.csv: row 1, column \"a\": \"1.234,5\" is not a number; if it means \"no answer\", add it to missing_codes");
 }
 
 TEST_CASE("ragged rows say how many cells were expected, and nothing about those cells", "[data]") {
@@ -46,19 +49,22 @@ TEST_CASE("ragged rows say how many cells were expected, and nothing about those
 
 TEST_CASE("the line is given where line ends in cells or blank lines make it differ from the row", "[data]") {
     CHECK(faults_of([] {
-              read_delimited_text("note,a\n\"one\ntwo\r\nthree\",1\nx,oops\n\ny,2,3\n", "t.csv", {},
-                                  [](const auto&) { return ColumnChoice{{1}, {}}; });
-          }) == "t.csv: row 2 (line 5), column \"a\": \"oops\" is not a number; if it means \"no answer\", add it to "
-                "missing_codes\n"
-                "t.csv: row 3 (line 7): expected 2 cells, found 3");
+              read_delimited_text("note,a\n\"one\ntwo\r\nthree\",1\nx,oops\n\ny,2,3\n", "t.csv", {}, [](const auto&) {
+                  return ColumnChoice{{1}, {}};
+              });
+          }) ==
+          "t.csv: row 2 (line 5), column \"a\": \"oops\" is not a number; if it means \"no answer\", add it to "
+          "missing_codes\n"
+          "t.csv: row 3 (line 7): expected 2 cells, found 3");
 }
 
 TEST_CASE("the first twenty faults are told and the rest counted", "[data]") {
     std::string text = "a,b\n";
     for (int row = 0; row < 1000000; ++row) text += "1,?\n";
     const std::string message = faults_in(text);
-    CHECK(message.ends_with("t.csv: row 20, column \"b\": \"?\" is not a number; if it means \"no answer\", add it to "
-                            "missing_codes\nand 999980 more errors"));
+    CHECK(
+        message.ends_with("t.csv: row 20, column \"b\": \"?\" is not a number; if it means \"no answer\", add it to "
+                          "missing_codes\nand 999980 more errors"));
     CHECK(std::count(message.begin(), message.end(), '\n') == 20);
     std::string exactly = "a,b\n";
     for (int row = 0; row < 21; ++row) exactly += "1,?\n";
@@ -75,7 +81,8 @@ TEST_CASE("control characters and long cells are shown on one short line", "[dat
 }
 
 TEST_CASE("quotes out of order are faults", "[data]") {
-    CHECK(faults_in("a,b\n1,2\n3,\"4\n5,6\n") == "t.csv: row 2, column \"b\": the quote that opens this cell is never closed");
+    CHECK(faults_in("a,b\n1,2\n3,\"4\n5,6\n") ==
+          "t.csv: row 2, column \"b\": the quote that opens this cell is never closed");
     CHECK(faults_in("a,b\n\"1\"x,2\n") ==
           "t.csv: row 1, column \"a\": text follows the closing quote; a quote inside quotes is written twice (\"\")");
     CHECK(faults_in("a,\"b\n1,2\n") == "t.csv: header, column 2: the quote that opens this cell is never closed");
@@ -94,7 +101,8 @@ TEST_CASE("headers: names twice, no name, no rows, nothing at all", "[data]") {
     CHECK(faults_in("a,b") == "t.csv: error: the file holds a header but no rows of data");
     CHECK(faults_in("a\n\n\n") == "t.csv: error: the file holds a header but no rows of data");
     CHECK(faults_in("") == "t.csv: error: the file is empty; expected a header row with the column names");
-    CHECK(faults_in("\xEF\xBB\xBF\n \r\n") == "t.csv: error: the file is empty; expected a header row with the column names");
+    CHECK(faults_in("\xEF\xBB\xBF\n \r\n") ==
+          "t.csv: error: the file is empty; expected a header row with the column names");
 }
 
 TEST_CASE("faults of the header and of the choice are told together", "[data]") {
@@ -102,13 +110,17 @@ TEST_CASE("faults of the header and of the choice are told together", "[data]") 
               read_delimited_text("a,a\n1,2\n", "t.csv", {}, [](const auto&) -> ColumnChoice {
                   throw FaultError(Fault{"study.yaml", {}, {}, "no such name", {}, {}});
               });
-          }) == "t.csv: header, column 2: \"a\" is the name of column 1 too; rename one of them\n"
-                "study.yaml: error: no such name");
+          }) ==
+          "t.csv: header, column 2: \"a\" is the name of column 1 too; rename one of them\n"
+          "study.yaml: error: no such name");
 }
 
 TEST_CASE("what is no UTF-8 text is refused with what to do", "[data]") {
-    constexpr const char* kWide = "t.csv: error: this is UTF-16 text; save it as UTF-8 (\"CSV UTF-8\" in most spreadsheets)";
-    CHECK(faults_in(std::string_view("\xFF\xFE" "a\0,\0", 6)) == kWide);
+    constexpr const char* kWide =
+        "t.csv: error: this is UTF-16 text; save it as UTF-8 (\"CSV UTF-8\" in most spreadsheets)";
+    CHECK(faults_in(std::string_view("\xFF\xFE"
+                                     "a\0,\0",
+                                     6)) == kWide);
     CHECK(faults_in(std::string_view("\xFE\xFF\0a\0,", 6)) == kWide);
     CHECK(faults_in(std::string_view("a\0,\0b\0\n\0", 8)) == kWide);
     CHECK(faults_in(std::string_view("a,b\n1,2\n3,\0\n", 12)) ==
@@ -121,8 +133,12 @@ TEST_CASE("what is no UTF-8 text is refused with what to do", "[data]") {
           "t.csv: row 1, column \"a\": \"M\\xfcller\" is not UTF-8 text; save the file as UTF-8");
     CHECK(faults_of([] { read_texts("M\xFCll,b\nx,1\n"); }) ==
           "t.csv: header, column 1: \"M\\xfcll\" is not UTF-8 text; save the file as UTF-8");
-    CHECK(faults_of([] { read_delimited_text("a,b\nM\xFCller,1\n", "t.csv", {},  // a column that is not asked for
-                                             [](const auto&) { return ColumnChoice{{1}, {}}; }); }) == "nothing thrown");
+    CHECK(faults_of([] {
+              read_delimited_text("a,b\nM\xFCller,1\n", "t.csv", {},  // a column that is not asked for
+                                  [](const auto&) {
+                                      return ColumnChoice{{1}, {}};
+                                  });
+          }) == "nothing thrown");
 }
 
 TEST_CASE("files that cannot be read say why and suggest the nearest name", "[data]") {

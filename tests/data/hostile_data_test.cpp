@@ -14,7 +14,8 @@ namespace {
 /// A text far larger than memory should hold: a beginning, then one byte repeated.
 class Endless final : public ByteSource {
 public:
-    Endless(std::string beginning, char byte, std::uint64_t size) : beginning_(std::move(beginning)), byte_(byte), size_(size) {}
+    Endless(std::string beginning, char byte, std::uint64_t size)
+        : beginning_(std::move(beginning)), byte_(byte), size_(size) {}
     std::uint64_t size() const override { return size_; }
     std::size_t read_at(std::uint64_t offset, char* into, std::size_t most) const override {
         if (offset >= size_) return 0;
@@ -36,7 +37,8 @@ public:
     explicit Changing(std::string later) : later_(std::move(later)) {}
     std::uint64_t size() const override { return first_.size(); }
     std::size_t read_at(std::uint64_t offset, char* into, std::size_t most) const override {
-        const std::string& now = calls_++ < 2 ? first_ : later_;  // for the header and to count rows; then for the cells
+        const std::string& now =
+            calls_++ < 2 ? first_ : later_;  // for the header and to count rows; then for the cells
         return TextSource(now).read_at(offset, into, most);
     }
 
@@ -57,7 +59,8 @@ TEST_CASE("one quoted cell of 200 MB is refused early", "[data]") {
           "t.csv: row 2, column \"b\": this cell is longer than 1048576 bytes; is its closing quote missing?");
     CHECK(faults_of_source(Endless("a,b\n1,2\n3,", 'x', 200'000'000)) ==
           "t.csv: row 2, column \"b\": this cell is longer than 1048576 bytes; is this a delimited text file?");
-    CHECK(faults_of_source(Endless("a,b\n1,2\n3", ',', 200'000'000)) == "t.csv: row 2: this row is longer than 67108864 bytes");
+    CHECK(faults_of_source(Endless("a,b\n1,2\n3", ',', 200'000'000)) ==
+          "t.csv: row 2: this row is longer than 67108864 bytes");
     CHECK(faults_of_source(Endless("a,\"b", 'x', 200'000'000)) ==
           "t.csv: header: longer than 67108864 bytes; is a closing quote missing?");
     CHECK(faults_of_source(Endless("a,b\n1,2\n", '\n', 20'000'000)) == "nothing thrown");
@@ -75,7 +78,9 @@ TEST_CASE("a header of 100000 columns is read", "[data]") {
     for (int column = 0; column < 100000; ++column) text += (column > 0 ? ",c" : "c") + std::to_string(column);
     text += "\n1";
     for (int column = 1; column < 100000; ++column) text += ",2";
-    const Table table = read_delimited_text(text, "t.csv", {}, [](const auto&) { return ColumnChoice{{99999, 0}, {}}; });
+    const Table table = read_delimited_text(text, "t.csv", {}, [](const auto&) {
+        return ColumnChoice{{99999, 0}, {}};
+    });
     CHECK(table.header.size() == 100000);
     CHECK(table.numbers(0, 0) == 2);
     CHECK(table.numbers(0, 1) == 1);
@@ -117,9 +122,12 @@ TEST_CASE("any bytes end in a table or in faults, the same for one thread and fo
         std::string text = starts[random() % starts.size()];
         for (std::size_t edits = 1 + random() % 4; edits > 0; --edits) {
             const std::size_t at = random() % (text.size() + 1);
-            if (random() % 3 == 0) text.erase(at, random() % 5);
-            else if (random() % 2 == 0 && at < text.size()) text[at] = bytes[random() % bytes.size()];
-            else text.insert(at, 1, bytes[random() % bytes.size()]);
+            if (random() % 3 == 0)
+                text.erase(at, random() % 5);
+            else if (random() % 2 == 0 && at < text.size())
+                text[at] = bytes[random() % bytes.size()];
+            else
+                text.insert(at, 1, bytes[random() % bytes.size()]);
         }
         const auto choose = [](const std::vector<std::string>& header) {
             ColumnChoice choice;
@@ -132,8 +140,9 @@ TEST_CASE("any bytes end in a table or in faults, the same for one thread and fo
         first = faults_of([&] { table = read_source(TextSource(text), "t.csv", {0, {"-9", "NA"}}, choose, 1); });
         if (first == "nothing thrown") ++n_read;
         CHECK_FALSE(first.empty());
-        const std::string second =
-            faults_of([&] { read_source(TextSource(text), "t.csv", {0, {"-9", "NA"}}, choose, 3); });
+        const std::string second = faults_of([&] {
+            read_source(TextSource(text), "t.csv", {0, {"-9", "NA"}}, choose, 3);
+        });
         REQUIRE(first == second);
     }
     CHECK(n_read > 1000);
@@ -176,11 +185,16 @@ TEST_CASE("a table of many stretches and its faults do not depend on the number 
     std::mt19937 random(5);
     std::string text = "id,a,b,note\n";
     for (int row = 0; row < 60000; ++row)
-        text += std::to_string(row) + "," + std::to_string(random() % 7) + ",-" + std::to_string(random() % 1000) + ".5," +
-                (random() % 50 == 0 ? "\"two\nlines\"" : "plain") + "\n" + (random() % 100 == 0 ? "\n" : "");
+        text += std::to_string(row) + "," + std::to_string(random() % 7) + ",-" + std::to_string(random() % 1000) +
+                ".5," + (random() % 50 == 0 ? "\"two\nlines\"" : "plain") + "\n" + (random() % 100 == 0 ? "\n" : "");
     REQUIRE(text.size() > 4 * (std::size_t{1} << 18));
     const auto read = [](const std::string& from, unsigned n_threads) {
-        return read_source(TextSource(from), "t.csv", {}, [](const auto&) { return ColumnChoice{{0, 1, 2}, {3}}; }, n_threads);
+        return read_source(
+            TextSource(from), "t.csv", {},
+            [](const auto&) {
+                return ColumnChoice{{0, 1, 2}, {3}};
+            },
+            n_threads);
     };
     const Table one = read(text, 1);
     REQUIRE(one.n_rows == 60000);

@@ -51,8 +51,9 @@ TEST_CASE("a quote inside an unquoted cell is a character like another", "[data]
 
 TEST_CASE("LF, CRLF and CR end rows, with or without one at the end", "[data]") {
     for (const char* text : {"a,b\n1,2\n3,4\n", "a,b\n1,2\n3,4", "a,b\r\n1,2\r\n3,4\r\n", "a,b\r\n1,2\r\n3,4",
-                             "a,b\r1,2\r3,4\r", "a,b\r1,2\r3,4", "a,b\r\n1,2\r3,4\n", "\xEF\xBB\xBF"
-                                                                                      "a,b\n1,2\n3,4\n\n\r\n  \n"}) {
+                             "a,b\r1,2\r3,4\r", "a,b\r1,2\r3,4", "a,b\r\n1,2\r3,4\n",
+                             "\xEF\xBB\xBF"
+                             "a,b\n1,2\n3,4\n\n\r\n  \n"}) {
         CAPTURE(text);
         const Table table = read_numbers(text);
         CHECK(table.header == Texts{"a", "b"});
@@ -104,8 +105,10 @@ TEST_CASE("a decimal comma is read where the delimiter is no comma", "[data]") {
 
 TEST_CASE("empty cells and missing codes are no answer, by text and by value", "[data]") {
     const Table table = read_numbers("a,b\n-9,1\n-9.0,\n\" -9e0\",NA\n 9,\"\"\n7,9\n", {0, {"-9", "NA", " 7 "}});
-    CHECK(table.numbers.col(0).array().isNaN().cast<int>().matrix() == (Eigen::VectorXi(5) << 1, 1, 1, 0, 1).finished());
-    CHECK(table.numbers.col(1).array().isNaN().cast<int>().matrix() == (Eigen::VectorXi(5) << 0, 1, 1, 1, 0).finished());
+    CHECK(table.numbers.col(0).array().isNaN().cast<int>().matrix() ==
+          (Eigen::VectorXi(5) << 1, 1, 1, 0, 1).finished());
+    CHECK(table.numbers.col(1).array().isNaN().cast<int>().matrix() ==
+          (Eigen::VectorXi(5) << 0, 1, 1, 1, 0).finished());
     const Table texts = read_texts("a,b\n-9.0,yes\n NA ,no\n-9x,NAN\n", {0, {"-9", "NA"}});
     CHECK(texts.texts[0] == Texts{"", "", "-9x"});
     CHECK(texts.texts[1] == Texts{"yes", "no", "NAN"});
@@ -114,7 +117,8 @@ TEST_CASE("empty cells and missing codes are no answer, by text and by value", "
 }
 
 TEST_CASE("UTF-8 text is kept as it is", "[data]") {
-    CHECK(read_texts("a,b\n\xC3\xA9t\xC3\xA9,\xE2\x82\xAC\n").texts == std::vector<Texts>{{"\xC3\xA9t\xC3\xA9"}, {"\xE2\x82\xAC"}});
+    CHECK(read_texts("a,b\n\xC3\xA9t\xC3\xA9,\xE2\x82\xAC\n").texts ==
+          std::vector<Texts>{{"\xC3\xA9t\xC3\xA9"}, {"\xE2\x82\xAC"}});
 }
 
 TEST_CASE("the fast path for plain numbers agrees with std::from_chars to the last bit", "[data]") {
@@ -144,16 +148,28 @@ TEST_CASE("the fast path for plain numbers agrees with std::from_chars to the la
 
 TEST_CASE("numbers of every form are read as std::from_chars reads them", "[data]") {
     const NumberRules rules({}, false);
-    const std::vector<std::pair<const char*, double>> good = {
-        {"0", 0},       {"-0", -0.0},  {"00012", 12},     {".5", .5},         {"5.", 5},         {"+3", 3},
-        {"1e3", 1e3},   {"1E-3", 1e-3}, {" 7\t", 7},      {"1e100", 1e100},   {"-1e100", -1e100}, {"1e-400", 0},
-        {"0.1", 0.1},   {"123456789012345678901", 123456789012345678901.0},   {"2.2250738585072011e-308", 2.2250738585072011e-308}};
+    const std::vector<std::pair<const char*, double>> good = {{"0", 0},
+                                                              {"-0", -0.0},
+                                                              {"00012", 12},
+                                                              {".5", .5},
+                                                              {"5.", 5},
+                                                              {"+3", 3},
+                                                              {"1e3", 1e3},
+                                                              {"1E-3", 1e-3},
+                                                              {" 7\t", 7},
+                                                              {"1e100", 1e100},
+                                                              {"-1e100", -1e100},
+                                                              {"1e-400", 0},
+                                                              {"0.1", 0.1},
+                                                              {"123456789012345678901", 123456789012345678901.0},
+                                                              {"2.2250738585072011e-308", 2.2250738585072011e-308}};
     for (const auto& [text, value] : good) {
         CAPTURE(text);
         CHECK(rules.read(text).finding == Finding::number);
         CHECK(rules.read(text).value == value);
     }
-    for (const char* text : {"abc", "1.5abc", "0x10", "1,5", "1 2", "-", "+", ".", "e5", "--1", "+-1", "1e", "nan", "-nan", "1.2.3"}) {
+    for (const char* text :
+         {"abc", "1.5abc", "0x10", "1,5", "1 2", "-", "+", ".", "e5", "--1", "+-1", "1e", "nan", "-nan", "1.2.3"}) {
         CAPTURE(text);
         CHECK(rules.read(text).finding == Finding::not_a_number);
     }

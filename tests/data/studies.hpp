@@ -24,7 +24,8 @@ inline Study study_of(std::string settings, const std::string& own = {}, const s
     equations: {delivery: [skill]}
   - name: two
     equations: {delivery: [{square: skill}]}
-)" + own, path);
+)" + own,
+                           path);
 }
 
 inline Survey survey_of(const Study& study, const std::string& data) {

@@ -9,7 +9,8 @@ std::string faults_between(const std::string& settings, const std::string& data,
     return faults_of([&] { survey_of(settings, data, own); });
 }
 
-constexpr const char* kTwo = "constructs:\n  skill: {indicators: [a, b], range: [1, 7]}\n  delivery: {indicators: [d]}\n";
+constexpr const char* kTwo =
+    "constructs:\n  skill: {indicators: [a, b], range: [1, 7]}\n  delivery: {indicators: [d]}\n";
 
 }  // namespace
 
@@ -67,9 +68,11 @@ TEST_CASE("values outside the range are faults by row, raw values, only on rows 
     CHECK(faults_between("constructs:\n  skill: {indicators: [a, b], reversed: [b], range: [1, 7]}\n"
                          "  delivery: {indicators: [d]}\ndata: {where: {keep: 1}}\n",
                          "a,b,d,keep\n1,0,1,1\n,8,2,1\n9,9,9,0\n7.5,7,3,1\n") ==
-          "refits.csv: row 1, column \"b\": 0 is outside the range 1 to 7 of construct \"skill\"; if it means \"no answer\", "
+          "refits.csv: row 1, column \"b\": 0 is outside the range 1 to 7 of construct \"skill\"; if it means \"no "
+          "answer\", "
           "add it to missing_codes\n"
-          "refits.csv: row 2, column \"b\": 8 is outside the range 1 to 7 of construct \"skill\"; if it means \"no answer\", "
+          "refits.csv: row 2, column \"b\": 8 is outside the range 1 to 7 of construct \"skill\"; if it means \"no "
+          "answer\", "
           "add it to missing_codes\n"
           "refits.csv: row 4, column \"a\": 7.5 is outside the range 1 to 7 of construct \"skill\"; if it means \"no "
           "answer\", add it to missing_codes");
@@ -79,8 +82,9 @@ TEST_CASE("values outside the range are counted beyond the first twenty", "[data
     std::string data = "a,b,d\n";
     for (int row = 0; row < 1000; ++row) data += "99,-1," + std::to_string(row) + "\n";
     const std::string message = faults_between(kTwo, data);
-    CHECK(message.ends_with("refits.csv: row 10, column \"b\": -1 is outside the range 1 to 7 of construct \"skill\"; if it "
-                            "means \"no answer\", add it to missing_codes\nand 1980 more errors"));
+    CHECK(message.ends_with(
+        "refits.csv: row 10, column \"b\": -1 is outside the range 1 to 7 of construct \"skill\"; if it "
+        "means \"no answer\", add it to missing_codes\nand 1980 more errors"));
     CHECK(std::count(message.begin(), message.end(), '\n') == 20);
 }
 
@@ -91,13 +95,15 @@ TEST_CASE("no rows left: a fault with the count lost to each reason", "[data]") 
 data: {where: {phase: closed}}
 )",
                          "a,b,d,phase\n1,1,1,open\n2,2,2,open\n,1,1,closed\n1,,1,closed\n2,,2,closed\n") ==
-          "study.yaml:2:14: error: none of the 5 rows of \"refits.csv\" can be used; lost to: where: phase is not closed (2), "
+          "study.yaml:2:14: error: none of the 5 rows of \"refits.csv\" can be used; lost to: where: phase is not "
+          "closed (2), "
           "missing answer in \"a\" (1), missing answer in \"b\" (2)\n"
           "    2 | data: {file: refits.csv, where: {phase: closed}}\n"
           "      |              ^");
     CHECK(faults_between(std::string(kTwo) + "data: {where: {phase: [Closed, won]}}\n",
                          "a,b,d,phase\n1,1,1,open\n2,2,2,closed\n") ==
-          "study.yaml:2:14: error: none of the 2 rows of \"refits.csv\" can be used; lost to: where: phase is not Closed or "
+          "study.yaml:2:14: error: none of the 2 rows of \"refits.csv\" can be used; lost to: where: phase is not "
+          "Closed or "
           "won (2)\n"
           "    2 | data: {file: refits.csv, where: {phase: [Closed, won]}}\n"
           "      |              ^\n"
@@ -111,7 +117,8 @@ data: {where: {phase: closed}}
 TEST_CASE("a column without any answer is a fault that names it, under both row rules", "[data]") {
     for (const char* rule : {"drop", "mean"}) {
         CHECK(faults_between(std::string(kTwo) + "data: {rows: " + rule + "}\n", "a,b,d\n1,,1\n2,,2\n3,,4\n") ==
-              "study.yaml:5:27: error: column \"b\" holds no answer in any of the 3 rows that could be used; leave it out, or "
+              "study.yaml:5:27: error: column \"b\" holds no answer in any of the 3 rows that could be used; leave it "
+              "out, or "
               "check missing_codes\n"
               "    5 |   skill: {indicators: [a, b], range: [1, 7]}\n"
               "      |                           ^");
@@ -122,18 +129,21 @@ TEST_CASE("a column that is constant over the rows used is a fault", "[data]") {
     CHECK(faults_between("constructs:\n  skill: {indicators: [a, b], reversed: [b], range: [1, 7]}\n"
                          "  delivery: {indicators: [d]}\n",
                          "a,b,d\n1,2,5\n2,2,5\n,3,4\n") ==
-          "study.yaml:5:27: error: column \"b\" of construct \"skill\" is 2 in all 2 rows used; leave it out: a constant says "
+          "study.yaml:5:27: error: column \"b\" of construct \"skill\" is 2 in all 2 rows used; leave it out: a "
+          "constant says "
           "nothing about differences\n"
           "    5 |   skill: {indicators: [a, b], reversed: [b], range: [1, 7]}\n"
           "      |                           ^\n"
-          "study.yaml:6:27: error: column \"d\" of construct \"delivery\" is 5 in all 2 rows used; leave it out: a constant "
+          "study.yaml:6:27: error: column \"d\" of construct \"delivery\" is 5 in all 2 rows used; leave it out: a "
+          "constant "
           "says nothing about differences\n"
           "    6 |   delivery: {indicators: [d]}\n"
           "      |                           ^");
 }
 
 TEST_CASE("a column of the target may measure nothing else that is used", "[data]") {
-    CHECK(faults_between(R"(constructs:
+    CHECK(
+        faults_between(R"(constructs:
   skill: {indicators: [a, "d*"]}
   pace: {indicators: [d1]}
   sector: {category: d2}
@@ -141,40 +151,47 @@ TEST_CASE("a column of the target may measure nothing else that is used", "[data
   delivery: {indicators: [d1, d2]}
 controls: [pace, sector]
 )",
-                         "a,d1,d2\n1,1,1\n2,3,4\n", "    constructs: {skill: {indicators: [d2]}}\n") ==
-          "study.yaml:5:27: error: column \"d1\" measures the target \"delivery\" and cannot also measure \"skill\": it would "
-          "predict itself\n"
-          "    5 |   skill: {indicators: [a, \"d*\"]}\n"
-          "      |                           ^\n"
-          "study.yaml:5:27: error: column \"d2\" measures the target \"delivery\" and cannot also measure \"skill\": it would "
-          "predict itself\n"
-          "    5 |   skill: {indicators: [a, \"d*\"]}\n"
-          "      |                           ^\n"
-          "study.yaml:6:23: error: column \"d1\" measures the target \"delivery\" and cannot also measure \"pace\": it would "
-          "predict itself\n"
-          "    6 |   pace: {indicators: [d1]}\n"
-          "      |                       ^\n"
-          "study.yaml:7:22: error: column \"d2\" measures the target \"delivery\" and cannot also measure \"sector\": it would "
-          "predict itself\n"
-          "    7 |   sector: {category: d2}\n"
-          "      |                      ^\n"
-          "study.yaml:16:39: error: column \"d2\" measures the target \"delivery\" and cannot also measure \"skill\": it "
-          "would predict itself\n"
-          "   16 |     constructs: {skill: {indicators: [d2]}}\n"
-          "      |                                       ^");
+                       "a,d1,d2\n1,1,1\n2,3,4\n", "    constructs: {skill: {indicators: [d2]}}\n") ==
+        "study.yaml:5:27: error: column \"d1\" measures the target \"delivery\" and cannot also measure \"skill\": it "
+        "would "
+        "predict itself\n"
+        "    5 |   skill: {indicators: [a, \"d*\"]}\n"
+        "      |                           ^\n"
+        "study.yaml:5:27: error: column \"d2\" measures the target \"delivery\" and cannot also measure \"skill\": it "
+        "would "
+        "predict itself\n"
+        "    5 |   skill: {indicators: [a, \"d*\"]}\n"
+        "      |                           ^\n"
+        "study.yaml:6:23: error: column \"d1\" measures the target \"delivery\" and cannot also measure \"pace\": it "
+        "would "
+        "predict itself\n"
+        "    6 |   pace: {indicators: [d1]}\n"
+        "      |                       ^\n"
+        "study.yaml:7:22: error: column \"d2\" measures the target \"delivery\" and cannot also measure \"sector\": it "
+        "would "
+        "predict itself\n"
+        "    7 |   sector: {category: d2}\n"
+        "      |                      ^\n"
+        "study.yaml:16:39: error: column \"d2\" measures the target \"delivery\" and cannot also measure \"skill\": it "
+        "would predict itself\n"
+        "   16 |     constructs: {skill: {indicators: [d2]}}\n"
+        "      |                                       ^");
 }
 
 TEST_CASE("antecedents may share a column", "[data]") {
-    CHECK(faults_between("constructs:\n  skill: {indicators: [a, b]}\n  pace: {indicators: [b]}\n  delivery: {indicators: [d]}\n"
-                         "controls: [pace]\n",
-                         "a,b,d\n1,1,1\n2,3,4\n") == "nothing thrown");
+    CHECK(faults_between(
+              "constructs:\n  skill: {indicators: [a, b]}\n  pace: {indicators: [b]}\n  delivery: {indicators: [d]}\n"
+              "controls: [pace]\n",
+              "a,b,d\n1,1,1\n2,3,4\n") == "nothing thrown");
 }
 
 TEST_CASE("a category needs two levels and at most fifty", "[data]") {
     constexpr const char* kSector =
-        "constructs:\n  skill: {indicators: [a]}\n  sector: {category: k}\n  delivery: {indicators: [d]}\ncontrols: [sector]\n";
+        "constructs:\n  skill: {indicators: [a]}\n  sector: {category: k}\n  delivery: {indicators: [d]}\ncontrols: "
+        "[sector]\n";
     CHECK(faults_between(kSector, "a,d,k\n1,2,navy\n2,3,navy\n3,4,\n") ==
-          "study.yaml:6:22: error: category \"k\" is \"navy\" in all 2 rows used; leave it out: one level says nothing about "
+          "study.yaml:6:22: error: category \"k\" is \"navy\" in all 2 rows used; leave it out: one level says nothing "
+          "about "
           "differences\n"
           "    6 |   sector: {category: k}\n"
           "      |                      ^");
@@ -186,7 +203,8 @@ TEST_CASE("a category needs two levels and at most fifty", "[data]") {
     };
     CHECK(faults_between(kSector, data(50)) == "nothing thrown");
     CHECK(faults_between(kSector, data(51)) ==
-          "study.yaml:6:22: error: category \"k\" has 51 levels, above the limit of 50: it looks like an identifier; if it is "
+          "study.yaml:6:22: error: category \"k\" has 51 levels, above the limit of 50: it looks like an identifier; "
+          "if it is "
           "a number, declare it under indicators\n"
           "    6 |   sector: {category: k}\n"
           "      |                      ^");
@@ -195,8 +213,8 @@ TEST_CASE("a category needs two levels and at most fifty", "[data]") {
 TEST_CASE("more unknown names than are shown are counted once", "[data]") {
     std::string names;
     for (int i = 0; i < 30; ++i) names += ", pln" + std::to_string(i);
-    const std::string message =
-        faults_between("constructs:\n  skill: {indicators: [a" + names + "]}\n  delivery: {indicators: [d]}\n", "a,d\n1,2\n");
+    const std::string message = faults_between(
+        "constructs:\n  skill: {indicators: [a" + names + "]}\n  delivery: {indicators: [d]}\n", "a,d\n1,2\n");
     CHECK(message.ends_with("\nand 10 more errors"));
     CHECK(message.find("\"refits.csv\" has no column \"pln19\"\n") != std::string::npos);
     CHECK(message.find("pln20\"\n") == std::string::npos);
@@ -206,9 +224,10 @@ TEST_CASE("a data file that is not there is faulted where the study names it", "
     const TestFolder folder;
     folder.write("refit.csv", "a,b,d\n1,2,3\n");
     const Study study = study_of(kTwo, {}, folder / "study.yaml");
-    CHECK(faults_of([&] { read_survey(study); }) ==
-          (folder / "study.yaml") + ":2:14: error: data file \"" + (folder / "refits.csv") +
-              "\": no such file\n    2 | data: {file: refits.csv}\n      |              ^\ndid you mean \"refit.csv\"?");
+    CHECK(
+        faults_of([&] { read_survey(study); }) ==
+        (folder / "study.yaml") + ":2:14: error: data file \"" + (folder / "refits.csv") +
+            "\": no such file\n    2 | data: {file: refits.csv}\n      |              ^\ndid you mean \"refit.csv\"?");
 }
 
 TEST_CASE("faults of the cells name the data file as it was found", "[data]") {
@@ -222,6 +241,8 @@ TEST_CASE("faults of the cells name the data file as it was found", "[data]") {
 
 TEST_CASE("a table without a column that the study needs is a mistake of the caller", "[data]") {
     const Study study = study_of(kTwo);
-    const Table table = read_delimited_text("a,b,d\n1,2,3\n", "t.csv", {}, [](const auto&) { return ColumnChoice{{0, 1}, {}}; });
+    const Table table = read_delimited_text("a,b,d\n1,2,3\n", "t.csv", {}, [](const auto&) {
+        return ColumnChoice{{0, 1}, {}};
+    });
     CHECK_THROWS_WITH(build_survey(study, table), "the table lacks the column \"d\", which survey_columns() names");
 }

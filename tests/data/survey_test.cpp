@@ -60,16 +60,16 @@ constructs:
 data: {where: {phase: closed, wave: [1, 2]}, missing_codes: [-9], cluster: yard}
 )",
                                     "phase,wave,yard,a,b,d\n"
-                                    "closed,1,y1,1,1,1\n"     // 1 stays
-                                    "open,3,y1,,1,1\n"        // 2 phase
-                                    "closed,3,y1,,1,1\n"      // 3 wave
-                                    " closed ,2.0,y2,2,2,2\n" // 4 stays: numbers equal by value
-                                    "closed,1,y1,-9,,1\n"     // 5 a
-                                    "closed,1,y1,2,-9.0,\n"   // 6 b
-                                    "closed,1,y1,1,1,\n"      // 7 d
-                                    "closed,1,,1,1,1\n"       // 8 yard
-                                    ",1,y1,1,1,1\n"           // 9 phase: no answer equals nothing
-                                    "closed,02,y1,3,0,5\n");  // 10 stays
+                                    "closed,1,y1,1,1,1\n"      // 1 stays
+                                    "open,3,y1,,1,1\n"         // 2 phase
+                                    "closed,3,y1,,1,1\n"       // 3 wave
+                                    " closed ,2.0,y2,2,2,2\n"  // 4 stays: numbers equal by value
+                                    "closed,1,y1,-9,,1\n"      // 5 a
+                                    "closed,1,y1,2,-9.0,\n"    // 6 b
+                                    "closed,1,y1,1,1,\n"       // 7 d
+                                    "closed,1,,1,1,1\n"        // 8 yard
+                                    ",1,y1,1,1,1\n"            // 9 phase: no answer equals nothing
+                                    "closed,02,y1,3,0,5\n");   // 10 stays
     CHECK(survey.rows_read == 10);
     CHECK(survey.rows == Numbers{1, 4, 10});
     REQUIRE(survey.dropped.size() == 6);
@@ -133,12 +133,13 @@ controls: [sector, wave]
 }
 
 TEST_CASE("a theory's own measurement stands beside the study's", "[data]") {
-    const Survey survey = survey_of(R"(
+    const Survey survey =
+        survey_of(R"(
 constructs:
   skill: {indicators: [a, b]}
   delivery: {indicators: [d]}
 )",
-                                    "a,b,d\n1,2,3\n4,5,5\n", "    constructs: {skill: {indicators: [b], weights: equal}}\n");
+                  "a,b,d\n1,2,3\n4,5,5\n", "    constructs: {skill: {indicators: [b], weights: equal}}\n");
     REQUIRE(survey.measurements.size() == 3);
     CHECK(survey.measurement(0, "skill")->theory == Measurement::kEveryTheory);
     CHECK(survey.measurement(0, "skill")->variables == std::vector<int>{0, 1});
@@ -182,8 +183,9 @@ TEST_CASE("a file and its table in memory give the same survey", "[data]") {
     const std::string data = "id,b,a,d,k\n1,2,1,3,x\n2,,4,4,y\n3,6,5,5,x\n4,1,1,1,y\n";
     for (const std::string reversed : {"", ", reversed: [b], range: [1, 7]"}) {
         for (const std::string order : {"a, b", "b, a"}) {
-            const std::string constructs = "constructs:\n  skill: {indicators: [" + order + "]" + reversed +
-                                           "}\n  sector: {category: k}\n  delivery: {indicators: [d]}\ncontrols: [sector]\n";
+            const std::string constructs =
+                "constructs:\n  skill: {indicators: [" + order + "]" + reversed +
+                "}\n  sector: {category: k}\n  delivery: {indicators: [d]}\ncontrols: [sector]\n";
             const TestFolder folder;
             folder.write("refits.csv", data);
             const Study study = study_of(constructs, {}, folder / "study.yaml");

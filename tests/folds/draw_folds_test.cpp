@@ -33,7 +33,8 @@ theories:
 
 }  // namespace
 
-// From a short Python program written from the papers and fold_plan.hpp alone; a change here moves the folds of every study.
+// From a short Python program written from the papers and fold_plan.hpp alone; a change here moves the folds of every
+// study.
 TEST_CASE("the folds of a small plan never change", "[folds]") {
     const FoldPlan plan = draw_folds(10, {}, 3, 2, 1);
     CHECK(plan.fold_of == Folds{2, 0, 2, 2, 0, 1, 0, 1, 1, 0, 0, 1, 2, 0, 2, 2, 0, 0, 1, 1});
@@ -49,10 +50,13 @@ TEST_CASE("fold sizes differ by at most one row", "[folds]") {
             REQUIRE(plan.fold_of.size() == n * static_cast<std::size_t>(plan.repeats));
             for (int r = 0; r < plan.repeats; ++r) {
                 const std::vector<std::size_t> counts = sizes(plan, r);
-                CHECK(*std::max_element(counts.begin(), counts.end()) - *std::min_element(counts.begin(), counts.end()) <= 1);
+                CHECK(*std::max_element(counts.begin(), counts.end()) -
+                          *std::min_element(counts.begin(), counts.end()) <=
+                      1);
                 CHECK(*std::min_element(counts.begin(), counts.end()) >= 1);
             }
-            CHECK(plan.smallest_training() == n - (n + static_cast<std::size_t>(folds) - 1) / static_cast<std::size_t>(folds));
+            CHECK(plan.smallest_training() ==
+                  n - (n + static_cast<std::size_t>(folds) - 1) / static_cast<std::size_t>(folds));
         }
 }
 
@@ -104,12 +108,14 @@ TEST_CASE("clusters stay whole and folds stay balanced", "[folds]") {
         const FoldPlan plan = draw_folds(clusters.size(), clusters, folds, 10, 4);
         for (int r = 0; r < plan.repeats; ++r) {
             std::vector<std::set<std::uint32_t>> folds_of(23);
-            for (std::size_t i = 0; i < clusters.size(); ++i) folds_of[static_cast<std::size_t>(clusters[i])].insert(plan.fold(r, i));
+            for (std::size_t i = 0; i < clusters.size(); ++i)
+                folds_of[static_cast<std::size_t>(clusters[i])].insert(plan.fold(r, i));
             for (const auto& met : folds_of) CHECK(met.size() == 1);
             const std::vector<std::size_t> counts = sizes(plan, r);
             CHECK(*std::min_element(counts.begin(), counts.end()) >= 1);
             // Each cluster goes to the lightest fold, so no fold is heavier than the lightest by more than one cluster.
-            CHECK(*std::max_element(counts.begin(), counts.end()) - *std::min_element(counts.begin(), counts.end()) <= 5);
+            CHECK(*std::max_element(counts.begin(), counts.end()) - *std::min_element(counts.begin(), counts.end()) <=
+                  5);
         }
     }
 }
@@ -118,7 +124,8 @@ TEST_CASE("as many folds as clusters leave each cluster out once, and no fold is
     const std::vector<int> clusters = {0, 1, 1, 1, 1, 2, 3, 3, 0};
     const FoldPlan plan = draw_folds(clusters.size(), clusters, 4, 50, 1);
     CHECK(plan.repeats == 1);
-    CHECK(plan.advice == Texts{"Leaving one cluster out at a time splits the rows in only one way: 1 repeat was run instead of 50."});
+    CHECK(plan.advice ==
+          Texts{"Leaving one cluster out at a time splits the rows in only one way: 1 repeat was run instead of 50."});
     for (const std::size_t count : sizes(plan, 0)) CHECK(count >= 1);
     CHECK(plan.smallest_training() == 5);
     const std::vector<int> uneven = {0, 0, 0, 0, 0, 0, 0, 1, 2, 3, 4};
@@ -134,14 +141,16 @@ TEST_CASE("leaving one row out needs one repeat only, and says so if more were a
     Folds folds(plan.fold_of);
     std::sort(folds.begin(), folds.end());
     for (std::size_t i = 0; i < 12; ++i) CHECK(folds[i] == i);
-    CHECK(plan.advice == Texts{"Leaving one row out at a time splits the rows in only one way: 1 repeat was run instead of 50."});
+    CHECK(plan.advice ==
+          Texts{"Leaving one row out at a time splits the rows in only one way: 1 repeat was run instead of 50."});
     CHECK(plan.smallest_training() == 11);
     CHECK(draw_folds(12, {}, 12, 1, 1).advice.empty());
     CHECK(draw_folds(12, {}, 11, 50, 1).advice.empty());
 }
 
 TEST_CASE("more folds than rows or clusters are refused at their line", "[folds]") {
-    CHECK(fault_of([] { prepare(kStudy, invented_answers(6).csv()); }) == R"(study.yaml:8:16: error: folds: 7 asks for more folds than there are rows used (6)
+    CHECK(fault_of([] { prepare(kStudy, invented_answers(6).csv()); }) ==
+          R"(study.yaml:8:16: error: folds: 7 asks for more folds than there are rows used (6)
     8 | trial: {folds: 7, repeats: 4, seed: 11}
       |                ^
 use folds: 6 or fewer)");
@@ -152,7 +161,8 @@ use folds: 6 or fewer)");
     answers.names.push_back("yard");
     answers.values.conservativeResize(Eigen::NoChange, 12);
     for (Eigen::Index i = 0; i < 30; ++i) answers.values(i, 11) = static_cast<double>(i % 6);
-    CHECK(fault_of([&] { prepare(clustered, answers.csv()); }) == R"(study.yaml:8:16: error: folds: 7 asks for more folds than there are clusters (6)
+    CHECK(fault_of([&] { prepare(clustered, answers.csv()); }) ==
+          R"(study.yaml:8:16: error: folds: 7 asks for more folds than there are clusters (6)
     8 | trial: {folds: 7, repeats: 4, seed: 11}
       |                ^
 use folds: 6 or fewer)");

@@ -29,7 +29,8 @@ public:
     PlaceWithSplits(const PlaceWithSplits&) = delete;
     PlaceWithSplits& operator=(const PlaceWithSplits&) = delete;
 
-    SmallContest read(const std::string& splits, const std::string& data_keys = "", const std::string& trial = "folds_file: splits.csv") const {
+    SmallContest read(const std::string& splits, const std::string& data_keys = "",
+                      const std::string& trial = "folds_file: splits.csv") const {
         std::ofstream(folder_ / "splits.csv", std::ios::binary) << splits;
         return prepare("study: refits\ndata: {file: refits.csv" + data_keys + "}\n" + R"(constructs:
   skill: {indicators: [skl]}
@@ -39,7 +40,8 @@ theories:
   - {name: one, equations: {delivery: [skill]}}
   - {name: two, equations: {delivery: [{square: skill}]}}
 trial: {)" + trial + "}\n",
-                       "skl,dlv,yard\n1,2,a\n2,3,a\n3,5,b\n,4,b\n5,4,c\n6,7,c\n7,6,b\n8,8,a\n", (folder_ / "study.yaml").string());
+                       "skl,dlv,yard\n1,2,a\n2,3,a\n3,5,b\n,4,b\n5,4,c\n6,7,c\n7,6,b\n8,8,a\n",
+                       (folder_ / "study.yaml").string());
     }
     std::string fault(const std::string& splits, const std::string& data_keys = "") const {
         std::string told = fault_of([&] { read(splits, data_keys); });
@@ -80,7 +82,8 @@ TEST_CASE("the folds that a run writes can be given back and are the same folds"
 
 TEST_CASE("a folds file counts rows as the data file does, in any order, with any further columns", "[folds]") {
     const PlaceWithSplits place;
-    const FoldPlan plan = place.read("fold;note;repeat;row\n2;x;1;8\n1;y;1;7\n2;;1;6\n1;;1;5\n2;;1;3\n1;;1;2\n2;;1;1\n").plan;
+    const FoldPlan plan =
+        place.read("fold;note;repeat;row\n2;x;1;8\n1;y;1;7\n2;;1;6\n1;;1;5\n2;;1;3\n1;;1;2\n2;;1;1\n").plan;
     CHECK(plan.fold_of == std::vector<std::uint32_t>{1, 0, 1, 0, 1, 0, 1});
     CHECK(plan.folds == 2);
     CHECK(plan.repeats == 1);
@@ -96,8 +99,9 @@ TEST_CASE("lines for rows that the study does not use are passed over, with advi
 TEST_CASE("every fault of a folds file is told in whole", "[folds]") {
     const PlaceWithSplits place;
     CHECK(place.fault(splits()) == "nothing thrown");
-    CHECK(place.fault("row,split\n1,1\n") == "splits.csv: error: the column \"repeat\" is missing; a folds file has the columns row, repeat, fold\n"
-                                             "splits.csv: error: the column \"fold\" is missing; a folds file has the columns row, repeat, fold");
+    CHECK(place.fault("row,split\n1,1\n") ==
+          "splits.csv: error: the column \"repeat\" is missing; a folds file has the columns row, repeat, fold\n"
+          "splits.csv: error: the column \"fold\" is missing; a folds file has the columns row, repeat, fold");
     CHECK(place.fault("row,repeat,fold\n") == "splits.csv: error: the file holds a header but no rows of data");
     CHECK(place.fault("row,repeat,fold\n1,1,1\n0,1,2\n3,1.5,1\n5,1,\n6,-1,1e10\n") ==
           "splits.csv: row 2, column \"row\": expected a whole number from 1 up\n"
@@ -105,21 +109,27 @@ TEST_CASE("every fault of a folds file is told in whole", "[folds]") {
           "splits.csv: row 4, column \"fold\": expected a whole number from 1 up\n"
           "splits.csv: row 5, column \"repeat\": expected a whole number from 1 up\n"
           "splits.csv: row 5, column \"fold\": expected a whole number from 1 up");
-    CHECK(place.fault(splits("5,1,2", "9,1,2\n")) == "splits.csv: error: names row 9, but the data have 8 rows\n"
-                                                     "splits.csv: error: row 5 has no fold in repeat 1; every used row needs one in every repeat");
+    CHECK(place.fault(splits("5,1,2", "9,1,2\n")) ==
+          "splits.csv: error: names row 9, but the data have 8 rows\n"
+          "splits.csv: error: row 5 has no fold in repeat 1; every used row needs one in every repeat");
     CHECK(place.fault(splits("none", "3,1,2\n")) == "splits.csv: error: row 3 stands twice in repeat 1");
-    CHECK(place.fault(splits("none", "1,10001,1\n")) == "splits.csv: error: repeats run up to 10001; at most 10000 are possible");
-    CHECK(place.fault(splits("8,1,1", "8,1,8\n")) == "splits.csv: error: folds run up to 8; expected 2 to 7, the number of rows used");
-    CHECK(place.fault("row,repeat,fold\n1,1,1\n2,1,1\n") == "splits.csv: error: folds run up to 1; expected 2 to 7, the number of rows used");
-    CHECK(place.fault(splits("8,1,1", "8,1,4\n")) == "splits.csv: error: repeat 1 holds out no used row in fold 3; every repeat needs the folds 1 to 4");
+    CHECK(place.fault(splits("none", "1,10001,1\n")) ==
+          "splits.csv: error: repeats run up to 10001; at most 10000 are possible");
+    CHECK(place.fault(splits("8,1,1", "8,1,8\n")) ==
+          "splits.csv: error: folds run up to 8; expected 2 to 7, the number of rows used");
+    CHECK(place.fault("row,repeat,fold\n1,1,1\n2,1,1\n") ==
+          "splits.csv: error: folds run up to 1; expected 2 to 7, the number of rows used");
+    CHECK(place.fault(splits("8,1,1", "8,1,4\n")) ==
+          "splits.csv: error: repeat 1 holds out no used row in fold 3; every repeat needs the folds 1 to 4");
 }
 
 TEST_CASE("a folds file may not split a cluster", "[folds]") {
     const PlaceWithSplits place;
     const std::string whole = "row,repeat,fold\n1,1,1\n2,1,1\n8,1,1\n3,1,2\n7,1,2\n5,1,2\n6,1,2\n";
     CHECK(place.fault(whole, ", cluster: yard") == "nothing thrown");
-    CHECK(place.fault(splits(), ", cluster: yard") == "splits.csv: error: repeat 1 splits the cluster \"a\" between the folds 1 and 2; with data: cluster, "
-                                                      "the rows of a cluster stay together");
+    CHECK(place.fault(splits(), ", cluster: yard") ==
+          "splits.csv: error: repeat 1 splits the cluster \"a\" between the folds 1 and 2; with data: cluster, "
+          "the rows of a cluster stay together");
 }
 
 TEST_CASE("at most twenty faults of a folds file are listed", "[folds]") {

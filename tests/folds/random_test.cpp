@@ -15,7 +15,8 @@ using Words = std::array<std::uint32_t, 4>;
 
 namespace {
 
-/// Philox4x32-10 written from the paper (Salmon, Moraes, Dror & Shaw 2011, SC'11, section 3.3), sharing nothing with the library.
+/// Philox4x32-10 written from the paper (Salmon, Moraes, Dror & Shaw 2011, SC'11, section 3.3), sharing nothing with
+/// the library.
 Words plain_philox(Words counter, std::array<std::uint32_t, 2> key) {
     for (int round = 0; round < 10; ++round) {
         const std::uint64_t a = std::uint64_t{0xD2511F53U} * counter[0];
@@ -32,7 +33,8 @@ double chi_square(const std::vector<std::size_t>& counts) {
     double total = 0, sum = 0;
     for (const std::size_t count : counts) total += static_cast<double>(count);
     const double expected = total / static_cast<double>(counts.size());
-    for (const std::size_t count : counts) sum += (static_cast<double>(count) - expected) * (static_cast<double>(count) - expected) / expected;
+    for (const std::size_t count : counts)
+        sum += (static_cast<double>(count) - expected) * (static_cast<double>(count) - expected) / expected;
     return sum;
 }
 
@@ -45,13 +47,17 @@ TEST_CASE("the generator gives the published known answers", "[folds]") {
         std::array<std::uint32_t, 2> key;
         Words answer;
     };
-    const std::vector<Known> known = {
-        {{0, 0, 0, 0}, {0, 0}, {0x6627e8d5U, 0xe169c58dU, 0xbc57ac4cU, 0x9b00dbd8U}},
-        {{0xffffffffU, 0xffffffffU, 0xffffffffU, 0xffffffffU}, {0xffffffffU, 0xffffffffU}, {0x408f276dU, 0x41c83b0eU, 0xa20bc7c6U, 0x6d5451fdU}},
-        {{0x243f6a88U, 0x85a308d3U, 0x13198a2eU, 0x03707344U}, {0xa4093822U, 0x299f31d0U}, {0xd16cfe09U, 0x94fdccebU, 0x5001e420U, 0x24126ea1U}}};
+    const std::vector<Known> known = {{{0, 0, 0, 0}, {0, 0}, {0x6627e8d5U, 0xe169c58dU, 0xbc57ac4cU, 0x9b00dbd8U}},
+                                      {{0xffffffffU, 0xffffffffU, 0xffffffffU, 0xffffffffU},
+                                       {0xffffffffU, 0xffffffffU},
+                                       {0x408f276dU, 0x41c83b0eU, 0xa20bc7c6U, 0x6d5451fdU}},
+                                      {{0x243f6a88U, 0x85a308d3U, 0x13198a2eU, 0x03707344U},
+                                       {0xa4093822U, 0x299f31d0U},
+                                       {0xd16cfe09U, 0x94fdccebU, 0x5001e420U, 0x24126ea1U}}};
     for (const Known& k : known) {
         CHECK(plain_philox(k.counter, k.key) == k.answer);
-        const auto out = r123::Philox4x32{}({{k.counter[0], k.counter[1], k.counter[2], k.counter[3]}}, {{k.key[0], k.key[1]}});
+        const auto out =
+            r123::Philox4x32{}({{k.counter[0], k.counter[1], k.counter[2], k.counter[3]}}, {{k.key[0], k.key[1]}});
         CHECK(Words{out[0], out[1], out[2], out[3]} == k.answer);
     }
     RandomStream zero(0, static_cast<Purpose>(0), 0);
@@ -64,8 +70,9 @@ TEST_CASE("a stream is the generator keyed by the seed, counting blocks within i
             for (const std::uint32_t index : {0U, 49U, 0xffffffffU}) {
                 RandomStream stream(seed, purpose, index);
                 for (std::uint32_t block = 0; block < 3; ++block) {
-                    const Words expected = plain_philox({block, 0, index, static_cast<std::uint32_t>(purpose)},
-                                                        {static_cast<std::uint32_t>(seed), static_cast<std::uint32_t>(seed >> 32)});
+                    const Words expected =
+                        plain_philox({block, 0, index, static_cast<std::uint32_t>(purpose)},
+                                     {static_cast<std::uint32_t>(seed), static_cast<std::uint32_t>(seed >> 32)});
                     CHECK(Words{stream.next32(), stream.next32(), stream.next32(), stream.next32()} == expected);
                 }
             }
@@ -78,7 +85,8 @@ TEST_CASE("a stream is the generator keyed by the seed, counting blocks within i
 // From a short Python program written from the papers alone; a change here moves every fold of every study.
 TEST_CASE("the first draws of the first repeat of seed 1 never change", "[folds]") {
     RandomStream words(1, Purpose::folds, 0);
-    CHECK(Words{words.next32(), words.next32(), words.next32(), words.next32()} == Words{0x127bee41U, 0x1e047488U, 0x48842b20U, 0x0a393496U});
+    CHECK(Words{words.next32(), words.next32(), words.next32(), words.next32()} ==
+          Words{0x127bee41U, 0x1e047488U, 0x48842b20U, 0x0a393496U});
     RandomStream wide(1, Purpose::folds, 0), bounded(1, Purpose::folds, 0), shuffling(1, Purpose::folds, 0);
     CHECK(wide.next64() == 0x1e047488127bee41U);
     CHECK(wide.unit() == 0.0399353854086405);
@@ -99,7 +107,8 @@ TEST_CASE("two words make a wide one, the first low, and 53 bits of it a number 
     }
 }
 
-// Limits: chi-square quantiles at 1 - 1e-4 (R qchisq, rounded up); seeds are fixed, so each check gives the same number for ever.
+// Limits: chi-square quantiles at 1 - 1e-4 (R qchisq, rounded up); seeds are fixed, so each check gives the same number
+// for ever.
 TEST_CASE("bounded draws are uniform at small bounds", "[folds]") {
     const std::map<std::uint64_t, double> limit = {{2, 15.2}, {3, 18.5}, {5, 23.6}, {6, 25.8}, {7, 27.9}, {10, 33.8}};
     for (const auto& [bound, most] : limit) {

@@ -58,7 +58,8 @@ TEST_CASE("p has no zero before its point, and none is 0", "[report]") {
 }
 
 TEST_CASE("an exact number reads back to the same double and is empty where there is none", "[report]") {
-    for (const double value : {0.1, 1.0 / 3, 6.02214076e23, 5e-324, -1.7976931348623157e308, 0.0, 123456789.123456789}) {
+    for (const double value :
+         {0.1, 1.0 / 3, 6.02214076e23, 5e-324, -1.7976931348623157e308, 0.0, 123456789.123456789}) {
         INFO(value);
         CHECK(std::strtod(exact(value).c_str(), nullptr) == value);
     }
@@ -100,9 +101,9 @@ TEST_CASE("what could move a terminal's cursor is written out", "[report]") {
     CHECK(plain("a\x1b[31mb") == "a\\x1b[31mb");
     CHECK(plain("two\nlines\tand\r") == "two\\nlines\\tand\\r");
     CHECK(plain("\x7f") == "\\x7f");
-    CHECK(plain("\xC2\x9B") == "\\x9b");          // a C1 control: some terminals take it for escape [
+    CHECK(plain("\xC2\x9B") == "\\x9b");                  // a C1 control: some terminals take it for escape [
     CHECK(plain("\xE2\x80\xAEright") == "\\u202eright");  // turns the reading direction
-    CHECK(plain("\xFF\xC3") == "\\xff\\xc3");     // no UTF-8
+    CHECK(plain("\xFF\xC3") == "\\xff\\xc3");             // no UTF-8
 }
 
 TEST_CASE("a Markdown cell keeps its text one cell", "[report]") {

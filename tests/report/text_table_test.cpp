@@ -28,9 +28,9 @@ TEST_CASE("width counts columns, not bytes", "[report]") {
     CHECK(display_width("") == 0);
     CHECK(display_width("planning") == 8);
     CHECK(display_width("größer") == 6);
-    CHECK(display_width("理論") == 4);             // East Asian wide: Unicode Standard Annex 11
-    CHECK(display_width("e\xCC\x81") == 1);        // a combining accent
-    CHECK(display_width("\xFF") == 1);             // no UTF-8
+    CHECK(display_width("理論") == 4);       // East Asian wide: Unicode Standard Annex 11
+    CHECK(display_width("e\xCC\x81") == 1);  // a combining accent
+    CHECK(display_width("\xFF") == 1);       // no UTF-8
 }
 
 TEST_CASE("a text is cut between characters", "[report]") {
@@ -63,7 +63,8 @@ TEST_CASE("a word longer than a line is broken between characters", "[report]") 
 }
 
 TEST_CASE("wrapping loses nothing and keeps to the width, for every width", "[report]") {
-    const std::string text = "Größere Betriebe ( n = 40 ) planen \"früher\", " + std::string(90, 'x') + " und 理論理論理論理論 folgt.";
+    const std::string text =
+        "Größere Betriebe ( n = 40 ) planen \"früher\", " + std::string(90, 'x') + " und 理論理論理論理論 folgt.";
     for (std::size_t width = 4; width < 100; ++width) {
         const std::string wrapped = wrap(text, width, 2);
         INFO(width << "\n" << wrapped);
@@ -72,7 +73,9 @@ TEST_CASE("wrapping loses nothing and keeps to the width, for every width", "[re
     }
 }
 
-TEST_CASE("a line too narrow for its indent still ends", "[report]") { CHECK(without_spaces(wrap("abc de", 1, 2)) == "abcde"); }
+TEST_CASE("a line too narrow for its indent still ends", "[report]") {
+    CHECK(without_spaces(wrap("abc de", 1, 2)) == "abcde");
+}
 
 TEST_CASE("columns are aligned, numbers to the right, names to the left", "[report]") {
     TextTable table({{"rank", false}, {"theory", true}, {"loss", false}});

@@ -32,11 +32,21 @@ std::string mutate(std::string text, Generator& random) {
         const std::size_t at = random.below(text.size());
         const std::size_t length = random.below(std::min<std::size_t>(30, text.size() - at)) + 1;
         switch (random.below(5)) {
-            case 0: text.erase(at, length); break;
-            case 1: text.insert(at, kPieces[random.below(kPieces.size())]); break;
-            case 2: text.replace(at, 1, kPieces[random.below(kPieces.size())]); break;
-            case 3: text.insert(random.below(text.size()), text.substr(at, length)); break;
-            default: text.resize(at == 0 ? text.size() : std::max(at, text.size() - length)); break;
+            case 0:
+                text.erase(at, length);
+                break;
+            case 1:
+                text.insert(at, kPieces[random.below(kPieces.size())]);
+                break;
+            case 2:
+                text.replace(at, 1, kPieces[random.below(kPieces.size())]);
+                break;
+            case 3:
+                text.insert(random.below(text.size()), text.substr(at, length));
+                break;
+            default:
+                text.resize(at == 0 ? text.size() : std::max(at, text.size() - length));
+                break;
         }
     }
     return text;

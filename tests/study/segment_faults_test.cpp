@@ -94,7 +94,8 @@ study.yaml:4:59: error: "cuts" of "segment" of "data" must ascend, found 3 after
 }
 
 TEST_CASE("the segment column is not the cluster column", "[study]") {
-    CHECK(faults_after({{"refits.csv", "refits.csv\n  segment: {column: yard, cuts: [4]}\n  cluster: yard"}}) == R"FAULT(
+    CHECK(faults_after({{"refits.csv", "refits.csv\n  segment: {column: yard, cuts: [4]}\n  cluster: yard"}}) ==
+          R"FAULT(
 study.yaml:4:21: error: the segment column "yard" is the cluster column too; expected another column: a cluster would be a segment of its own
     4 |   segment: {column: yard, cuts: [4]}
       |                     ^

@@ -1,5 +1,5 @@
-// Contests from texts in memory: a study, a delimited table, and what the rooms make of them. Invented data come from the
-// program's own generator, so that they are the same everywhere.
+// Contests from texts in memory: a study, a delimited table, and what the rooms make of them. Invented data come from
+// the program's own generator, so that they are the same everywhere.
 #pragma once
 
 #include "rivalfold/data/read_delimited.hpp"
@@ -33,8 +33,9 @@ struct SmallContest {
 
 inline Survey survey_from(const Study& study, const std::string& data) {
     const ReadRules rules{study.data.delimiter, study.data.missing_codes};
-    const Table table = read_delimited_text(data, study.data.file.text, rules,
-                                            [&](const std::vector<std::string>& header) { return survey_columns(study, header); });
+    const Table table =
+        read_delimited_text(data, study.data.file.text, rules,
+                            [&](const std::vector<std::string>& header) { return survey_columns(study, header); });
     return build_survey(study, table);
 }
 
@@ -63,33 +64,39 @@ struct Answers {
         std::string text = fmt::format("{}\n", fmt::join(names, ","));
         for (Eigen::Index i = 0; i < values.rows(); ++i)
             for (Eigen::Index j = 0; j < values.cols(); ++j)
-                text += fmt::format("{}{}", std::isnan(values(i, j)) ? "" : fmt::format("{}", values(i, j)), j + 1 == values.cols() ? '\n' : ',');
+                text += fmt::format("{}{}", std::isnan(values(i, j)) ? "" : fmt::format("{}", values(i, j)),
+                                    j + 1 == values.cols() ? '\n' : ',');
         return text;
     }
 };
 
-/// Roughly normal with standard deviation 1: a sum of twelve uniforms, free of library functions that differ between machines.
+/// Roughly normal with standard deviation 1: a sum of twelve uniforms, free of library functions that differ between
+/// machines.
 inline double bell(RandomStream& stream) {
     double sum = -6;
     for (int k = 0; k < 12; ++k) sum += stream.unit();
     return sum;
 }
 
-/// Invented seven-point answers: planning, skill and supply (pln1-3, skl1-3, sup1-2) and delivery (dlv1-3), which depends on them and on
-/// planning x skill.
+/// Invented seven-point answers: planning, skill and supply (pln1-3, skl1-3, sup1-2) and delivery (dlv1-3), which
+/// depends on them and on planning x skill.
 inline Answers invented_answers(Eigen::Index n, std::uint64_t seed = 7) {
     RandomStream stream(seed, Purpose::simulation, 0);
     Answers out;
     out.names = {"pln1", "pln2", "pln3", "skl1", "skl2", "skl3", "sup1", "sup2", "dlv1", "dlv2", "dlv3"};
     out.values.resize(n, 11);
-    const auto answer = [&](double latent) { return std::clamp(std::round(4 + 1.2 * (0.8 * latent + 0.6 * bell(stream))), 1.0, 7.0); };
+    const auto answer = [&](double latent) {
+        return std::clamp(std::round(4 + 1.2 * (0.8 * latent + 0.6 * bell(stream))), 1.0, 7.0);
+    };
     for (Eigen::Index i = 0; i < n; ++i) {
         const double common = bell(stream);
         const double planning = 0.6 * common + 0.8 * bell(stream);
         const double skill = 0.6 * common + 0.8 * bell(stream);
         const double supply = 0.4 * skill + 0.9 * bell(stream);
-        const double delivery = 0.4 * planning + 0.3 * skill + 0.3 * supply + 0.2 * planning * skill + 0.6 * bell(stream);
-        const double latent[] = {planning, planning, planning, skill, skill, skill, supply, supply, delivery, delivery, delivery};
+        const double delivery =
+            0.4 * planning + 0.3 * skill + 0.3 * supply + 0.2 * planning * skill + 0.6 * bell(stream);
+        const double latent[] = {planning, planning, planning, skill,    skill,   skill,
+                                 supply,   supply,   delivery, delivery, delivery};
         for (Eigen::Index j = 0; j < 11; ++j) out.values(i, j) = answer(latent[j]);
     }
     return out;

@@ -18,12 +18,17 @@ struct Fitted {
             if (plan.blocks[b].construct == construct) return static_cast<int>(b);
         throw std::logic_error("no block " + construct);
     }
-    const Eigen::VectorXd& weights(const std::string& construct) const { return fit.weights[static_cast<std::size_t>(block(construct))]; }
-    const Eigen::VectorXd& loadings(const std::string& construct) const { return fit.loadings[static_cast<std::size_t>(block(construct))]; }
+    const Eigen::VectorXd& weights(const std::string& construct) const {
+        return fit.weights[static_cast<std::size_t>(block(construct))];
+    }
+    const Eigen::VectorXd& loadings(const std::string& construct) const {
+        return fit.loadings[static_cast<std::size_t>(block(construct))];
+    }
 };
 
 inline Fitted fit_all(const SmallContest& contest, std::size_t theory) {
-    const TheoryContestant contestant(*contest.sample, build_blueprints(contest.study, contest.survey, *contest.sample)[theory], true);
+    const TheoryContestant contestant(*contest.sample,
+                                      build_blueprints(contest.study, contest.survey, *contest.sample)[theory], true);
     std::vector<Eigen::Index> all(static_cast<std::size_t>(contest.sample->n));
     std::iota(all.begin(), all.end(), Eigen::Index{0});
     Moments moments;
@@ -37,7 +42,8 @@ inline Fitted fit_all(const SmallContest& contest, std::size_t theory) {
 /// Columns with mean 0 and standard deviation 1 (divisor n - 1).
 inline Eigen::MatrixXd standardised(const Eigen::MatrixXd& x) {
     Eigen::MatrixXd z = x.rowwise() - x.colwise().mean();
-    for (Eigen::Index j = 0; j < z.cols(); ++j) z.col(j) /= std::sqrt(z.col(j).squaredNorm() / static_cast<double>(z.rows() - 1));
+    for (Eigen::Index j = 0; j < z.cols(); ++j)
+        z.col(j) /= std::sqrt(z.col(j).squaredNorm() / static_cast<double>(z.rows() - 1));
     return z;
 }
 

@@ -30,14 +30,16 @@ double lane_sum(Index n, const Value& value) {
 TEST_CASE("cross-products of any number of columns have the bits of a plain sum in four lanes", "[theory]") {
     for (Index m = 1; m <= 9; ++m)
         for (const Index rows : {0, 4, 8, 60, 1024}) {
-            const MatrixXd x = noise(rows + 3, m, static_cast<std::uint64_t>(m));  // columns longer than the rows asked for
+            const MatrixXd x =
+                noise(rows + 3, m, static_cast<std::uint64_t>(m));  // columns longer than the rows asked for
             MatrixXd gram = MatrixXd::Constant(m + 2, m, 0.25);
             add_gram(x.data(), x.rows(), rows, m, gram.data(), gram.rows());
             for (Index j = 0; j < m; ++j)
                 for (Index i = 0; i < m + 2; ++i) {
                     INFO(m << " columns, " << rows << " rows, at " << i << ", " << j);
                     const bool lower = i >= j && i < m;
-                    CHECK(gram(i, j) == (lower ? 0.25 + lane_sum(rows, [&](Index r) { return x(r, j) * x(r, i); }) : 0.25));
+                    CHECK(gram(i, j) ==
+                          (lower ? 0.25 + lane_sum(rows, [&](Index r) { return x(r, j) * x(r, i); }) : 0.25));
                 }
         }
 }
@@ -52,7 +54,8 @@ TEST_CASE("cross-products agree with X'X, and rows of zeros at the end change no
         CHECK(gram == longer);
         const MatrixXd plain = x.transpose() * x;
         for (Index j = 0; j < 5; ++j)
-            for (Index i = j; i < 5; ++i) CHECK(std::fabs(gram(i, j) - plain(i, j)) <= 1e-14 * std::sqrt(plain(i, i) * plain(j, j)));
+            for (Index i = j; i < 5; ++i)
+                CHECK(std::fabs(gram(i, j) - plain(i, j)) <= 1e-14 * std::sqrt(plain(i, i) * plain(j, j)));
     }
     CHECK(padded(0) == 0);
     CHECK(padded(1) == 4);
@@ -91,7 +94,8 @@ TEST_CASE("errors are added per row and in total, whatever the number of rows", 
     for (const Index n : {0, 1, 3, 4, 7, 8, 33}) {
         VectorXd squared = VectorXd::Constant(40, 1), absolute = VectorXd::Constant(40, 2);
         ErrorSums sums{10, 20, 30};
-        add_errors(x.col(0).data(), x.col(1).data(), inverse.data(), n, per_unit, squared.data(), absolute.data(), sums);
+        add_errors(x.col(0).data(), x.col(1).data(), inverse.data(), n, per_unit, squared.data(), absolute.data(),
+                   sums);
         const auto error = [&](Index i) { return x(i, 0) - x(i, 1); };
         for (Index i = 0; i < 40; ++i) {
             const double scaled = i < n ? error(i) * per_unit : 0;

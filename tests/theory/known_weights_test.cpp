@@ -18,17 +18,19 @@ Known known_values(const std::string& data, const std::string& mode) {
     return known;
 }
 
-Fitted two_blocks(const std::string& data, const std::string& first, const std::string& second, const std::string& mode) {
-    return fit_all(prepare("study: two blocks\ndata: {file: t.csv}\nconstructs:\n  first: {indicators: " + first + ", weights: " + mode +
-                               "}\n  second: {indicators: " + second + ", weights: " + mode + R"(}
+Fitted two_blocks(const std::string& data, const std::string& first, const std::string& second,
+                  const std::string& mode) {
+    return fit_all(
+        prepare("study: two blocks\ndata: {file: t.csv}\nconstructs:\n  first: {indicators: " + first +
+                    ", weights: " + mode + "}\n  second: {indicators: " + second + ", weights: " + mode + R"(}
 target: second
 theories:
   - {name: line, equations: {second: [first]}}
   - {name: bent, equations: {second: [{square: first}]}}
 trial: {folds: 4, repeats: 2}
 )",
-                           file_text(data)),
-                   0);
+                file_text(data)),
+        0);
 }
 
 struct Blocks {
@@ -39,13 +41,15 @@ struct Blocks {
 };
 const Blocks kBlocks[] = {
     {"linnerud", "reference/outside/linnerud.csv", "[Weight, Waist, Pulse]", "[Chins, Situps, Jumps]"},
-    {"swiss", "reference/open_data/swiss/data.csv", "[Agriculture, Examination, Education]", "[Fertility, Catholic, Infant.Mortality]"}};
+    {"swiss", "reference/open_data/swiss/data.csv", "[Agriculture, Examination, Education]",
+     "[Fertility, Catholic, Infant.Mortality]"}};
 
 }  // namespace
 
-// Wold (1982); Tenenhaus, Esposito Vinzi, Chatelin & Lauro (2005): two blocks on one path settle in mode A at the first singular vectors of the
-// cross-correlation matrix, in mode B at the first canonical pair. Values: numpy svd and R cancor (tests/reference/outside/README.md). Weights stop
-// within 1e-10 x r/(1 - r) of their limit, r the ratio of two rounds' changes: hence 1e-8.
+// Wold (1982); Tenenhaus, Esposito Vinzi, Chatelin & Lauro (2005): two blocks on one path settle in mode A at the first
+// singular vectors of the cross-correlation matrix, in mode B at the first canonical pair. Values: numpy svd and R
+// cancor (tests/reference/outside/README.md). Weights stop within 1e-10 x r/(1 - r) of their limit, r the ratio of two
+// rounds' changes: hence 1e-8.
 TEST_CASE("two blocks settle at singular vectors in mode A and at the canonical pair in mode B", "[theory]") {
     for (const Blocks& blocks : kBlocks)
         for (const std::string mode : {"mode_a", "mode_b"}) {
@@ -63,7 +67,8 @@ TEST_CASE("two blocks settle at singular vectors in mode A and at the canonical 
                 std::istringstream names(list.substr(1, list.size() - 2));
                 Eigen::Index h = 0;
                 for (std::string name; names >> name; ++seen)
-                    CHECK(fitted.weights(construct)(h++) == Approx(known.at("weight of " + name)).epsilon(1e-8).margin(1e-9));
+                    CHECK(fitted.weights(construct)(h++) ==
+                          Approx(known.at("weight of " + name)).epsilon(1e-8).margin(1e-9));
             }
             CHECK(seen == 6);
             CHECK(fitted.fit.score_correlations(fitted.block("first"), fitted.block("second")) ==
@@ -74,7 +79,8 @@ TEST_CASE("two blocks settle at singular vectors in mode A and at the canonical 
 // The same mode A solution as printed digits of scikit-learn's linnerud: unit-length singular vectors by numpy svd.
 TEST_CASE("linnerud's mode A weights have the direction of the printed singular vectors", "[theory]") {
     const Fitted fitted = two_blocks(kBlocks[0].file, kBlocks[0].first, kBlocks[0].second, "mode_a");
-    const Eigen::Vector3d u(-.589891177862442, -.771340585110411, .238876746548487), v(.613307417485638, .746971701670363, .256685193497363);
+    const Eigen::Vector3d u(-.589891177862442, -.771340585110411, .238876746548487),
+        v(.613307417485638, .746971701670363, .256685193497363);
     CHECK(std::fabs(fitted.weights("first").normalized().dot(u)) == Approx(1).epsilon(1e-14));
     CHECK((fitted.weights("first").normalized() + u).norm() < 1e-8);  // the sign that makes the loadings' sum positive
     CHECK((fitted.weights("second").normalized() - v).norm() < 1e-8);

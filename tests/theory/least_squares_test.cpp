@@ -75,18 +75,19 @@ double digits(double value, double certified, double unit) {
 
 }  // namespace
 
-// NIST Statistical Reference Datasets, linear regression, certified coefficients and standard errors (public domain), raw rows. Per problem the
-// digits that must agree, half a digit or more below what was reached with g++ 12: coefficients 12.3, 11.9, 12.1, 7.0, 9.6, 7.0; standard errors
-// 10.7, 10.2, 13.5, exact, exact, 10.2. Cross-products cost the square of the condition number (powers 1 to 5 of 0 .. 20 in Wampler), and
-// a residual sum of squares that is 1e-5 of the total costs five digits of the standard errors.
+// NIST Statistical Reference Datasets, linear regression, certified coefficients and standard errors (public domain),
+// raw rows. Per problem the digits that must agree, half a digit or more below what was reached with g++ 12:
+// coefficients 12.3, 11.9, 12.1, 7.0, 9.6, 7.0; standard errors 10.7, 10.2, 13.5, exact, exact, 10.2. Cross-products
+// cost the square of the condition number (powers 1 to 5 of 0 .. 20 in Wampler), and a residual sum of squares that is
+// 1e-5 of the total costs five digits of the standard errors.
 TEST_CASE("certified regressions are met to the digits that their condition leaves", "[theory]") {
     struct Case {
         const char* name;
         double coefficient_digits, error_digits;
     };
     const auto certified = nlohmann::json::parse(file_text("reference/open_data/nist/certified.json"));
-    for (const Case& c : {Case{"Norris", 11.5, 10}, Case{"Pontius", 11, 9.5}, Case{"Longley", 11.5, 12}, Case{"Wampler1", 6.5, 7}, Case{"Wampler2", 8.5, 7},
-                          Case{"Wampler3", 6.5, 9.5}}) {
+    for (const Case& c : {Case{"Norris", 11.5, 10}, Case{"Pontius", 11, 9.5}, Case{"Longley", 11.5, 12},
+                          Case{"Wampler1", 6.5, 7}, Case{"Wampler2", 8.5, 7}, Case{"Wampler3", 6.5, 9.5}}) {
         const auto& known = certified.at(c.name);
         const auto b = known.at("b").get<std::vector<std::string>>();
         const auto se = known.at("se").get<std::vector<std::string>>();
@@ -101,8 +102,10 @@ TEST_CASE("certified regressions are met to the digits that their condition leav
         for (std::size_t k = 0; k < b.size(); ++k) {
             const Index j = static_cast<Index>(k) - 1;
             const double factor = k == 0 ? 1 / sums.n + sums.mean_x.dot(inverse * sums.mean_x) : inverse(j, j);
-            worst = std::min(worst, digits(k == 0 ? solution.intercept()(0) : solution.slopes()(j, 0), std::stod(b[k]), 1));
-            worst_error = std::min(worst_error, digits(std::sqrt(variance * factor), std::stod(se[k]), std::sqrt(sums.yy(0) / (sums.n - 1))));
+            worst =
+                std::min(worst, digits(k == 0 ? solution.intercept()(0) : solution.slopes()(j, 0), std::stod(b[k]), 1));
+            worst_error = std::min(worst_error, digits(std::sqrt(variance * factor), std::stod(se[k]),
+                                                       std::sqrt(sums.yy(0) / (sums.n - 1))));
         }
         INFO(c.name << ": " << worst << " digits of the coefficients, " << worst_error << " of the standard errors");
         CHECK(worst >= c.coefficient_digits);
@@ -130,8 +133,8 @@ TEST_CASE("a full-rank design gives the same coefficients as an orthogonal decom
     }
 }
 
-// The four conditions that define the generalised inverse (Penrose 1955): with one outcome per row, each 1 there and 0 elsewhere, the
-// coefficients are the columns of the inverse of [1, X].
+// The four conditions that define the generalised inverse (Penrose 1955): with one outcome per row, each 1 there and 0
+// elsewhere, the coefficients are the columns of the inverse of [1, X].
 TEST_CASE("rank-deficient designs give the solution of smallest norm: Penrose's four conditions", "[theory]") {
     RandomStream stream(2, Purpose::simulation, 0);
     const auto noise = [&](Index n, Index c) {

@@ -62,7 +62,8 @@ double disagreement(const Moments& a, const Moments& b) {
         if (!(b.sd(h) > 0)) continue;
         worst = std::max({worst, std::fabs(a.mean(h) - b.mean(h)) / b.sd(h), std::fabs(a.sd(h) - b.sd(h)) / b.sd(h)});
         for (Index k = 0; k < a.mean.size(); ++k)
-            if (b.sd(k) > 0) worst = std::max(worst, std::fabs(a.ss(h, k) - b.ss(h, k)) / (b.sd(h) * b.sd(k) * (b.n - 1)));
+            if (b.sd(k) > 0)
+                worst = std::max(worst, std::fabs(a.ss(h, k) - b.ss(h, k)) / (b.sd(h) * b.sd(k) * (b.n - 1)));
     }
     return worst;
 }
@@ -91,11 +92,13 @@ TEST_CASE("a sample is centred, gaps are zero and marked, and levels are 0 or 1"
     CHECK(sample.categories[0].n_levels == 3);
     for (Index i = 0; i < sample.n; ++i)
         for (int level = 0; level < 3; ++level)
-            CHECK(sample.values(i, 11 + level) == (survey.categories[0].codes[static_cast<std::size_t>(i)] == level ? 1 : 0));
+            CHECK(sample.values(i, 11 + level) ==
+                  (survey.categories[0].codes[static_cast<std::size_t>(i)] == level ? 1 : 0));
     CHECK(sample.centre.tail(3).isZero(0));
 }
 
-TEST_CASE("direct moments are means, deviations and products of the rows, gaps filled with their own mean", "[theory]") {
+TEST_CASE("direct moments are means, deviations and products of the rows, gaps filled with their own mean",
+          "[theory]") {
     const Survey survey = survey_of(40, 0, 0.2);
     const Sample sample = build_sample(survey);
     std::vector<Index> in;
@@ -139,10 +142,14 @@ TEST_CASE("moments by downdating equal direct ones to 1e-12, with gaps and far f
 
 TEST_CASE("items shifted by 1e8 have the same deviations and products to 1e-12", "[theory]") {
     for (const double gap_share : {0.0, 0.15}) {
-        const Sample near = build_sample(survey_of(200, 0, gap_share)), far = build_sample(survey_of(200, 1e8, gap_share));
-        Moments a = without(near, [](Index i) { return i % 7 == 0; }).downdated, b = without(far, [](Index i) { return i % 7 == 0; }).downdated;
+        const Sample near = build_sample(survey_of(200, 0, gap_share)),
+                     far = build_sample(survey_of(200, 1e8, gap_share));
+        Moments a = without(near, [](Index i) { return i % 7 == 0; }).downdated,
+                b = without(far, [](Index i) { return i % 7 == 0; }).downdated;
         // The centre of the shifted sample is a rounded number near 1e8, so means are compared in raw units.
-        CHECK(((far.centre + b.mean) - (near.centre + a.mean)).head(11).isApprox(Eigen::VectorXd::Constant(11, 1e8), 1e-15));
+        CHECK(((far.centre + b.mean) - (near.centre + a.mean))
+                  .head(11)
+                  .isApprox(Eigen::VectorXd::Constant(11, 1e8), 1e-15));
         a.mean.setZero();
         b.mean.setZero();
         CHECK(disagreement(a, b) < 1e-12);

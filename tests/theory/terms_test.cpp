@@ -1,5 +1,5 @@
-#include "support/catch.hpp"
 #include "theory/terms/terms.hpp"
+#include "support/catch.hpp"
 
 #include <array>
 #include <cmath>
@@ -36,7 +36,8 @@ TEST_CASE("every kind of term has its value in every row", "[theory]") {
 }
 
 TEST_CASE("the order of the members changes no bit of a minimum, a maximum or a product of two", "[theory]") {
-    for (const TermKind kind : {TermKind::minimum, TermKind::maximum, TermKind::product}) CHECK(term(kind, {&kA, &kB}) == term(kind, {&kB, &kA}));
+    for (const TermKind kind : {TermKind::minimum, TermKind::maximum, TermKind::product})
+        CHECK(term(kind, {&kA, &kB}) == term(kind, {&kB, &kA}));
 }
 
 TEST_CASE("a geometric mean is the root of the product, and has no value where a member is not positive", "[theory]") {
@@ -51,6 +52,7 @@ TEST_CASE("a geometric mean is the root of the product, and has no value where a
     CHECK(std::isnan(both_negative[1]));  // though their product is positive
     CHECK(both_negative[0] == Approx(1).epsilon(1e-15));
     const Numbers large(kA.size(), 1e200), small(kA.size(), 1e-250);
-    CHECK(term(TermKind::geometric_mean, {&large, &large, &large})[0] == Approx(1e200).epsilon(1e-12));  // no overflow on the way
+    CHECK(term(TermKind::geometric_mean, {&large, &large, &large})[0] ==
+          Approx(1e200).epsilon(1e-12));  // no overflow on the way
     CHECK(term(TermKind::geometric_mean, {&small, &small})[0] == Approx(1e-250).epsilon(1e-12));
 }

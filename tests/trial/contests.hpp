@@ -1,4 +1,5 @@
-// The contest that the tests of this room share: four theories over invented answers, every weighting and bent terms among them.
+// The contest that the tests of this room share: four theories over invented answers, every weighting and bent terms
+// among them.
 #pragma once
 
 #include "support/catch.hpp"
@@ -23,9 +24,11 @@ inline const std::string kTheories = R"(theories:
   - {name: scarcest, equations: {delivery: [{minimum: [planning, skill, supply]}, {maximum: [planning, supply]}]}}
 )";
 
-inline std::string study_text(const std::string& trial = "folds: 5, repeats: 4, seed: 3, mediators: predicted", const std::string& data_keys = "",
-                              const std::string& constructs = kConstructs, const std::string& theories = kTheories) {
-    return "study: refits\ndata: {file: refits.csv" + data_keys + "}\n" + constructs + theories + "trial: {" + trial + "}\n";
+inline std::string study_text(const std::string& trial = "folds: 5, repeats: 4, seed: 3, mediators: predicted",
+                              const std::string& data_keys = "", const std::string& constructs = kConstructs,
+                              const std::string& theories = kTheories) {
+    return "study: refits\ndata: {file: refits.csv" + data_keys + "}\n" + constructs + theories + "trial: {" + trial +
+           "}\n";
 }
 
 inline Trial run(const SmallContest& contest, unsigned threads = 1, const std::function<void(double)>& progress = {}) {
@@ -33,7 +36,8 @@ inline Trial run(const SmallContest& contest, unsigned threads = 1, const std::f
     return run_trial(contest.study, contest.survey, *contest.sample, plan, threads, progress);
 }
 
-/// The largest relative disagreement of any number that the tables use. Rows of `b` in the order `row_of_b` of the rows of `a`.
+/// The largest relative disagreement of any number that the tables use. Rows of `b` in the order `row_of_b` of the rows
+/// of `a`.
 inline double disagreement(const Trial& a, const Trial& b, const std::vector<Eigen::Index>& row_of_b = {}) {
     REQUIRE(a.contestants.size() == b.contestants.size());
     double worst = 0;
@@ -74,11 +78,12 @@ inline void check_same_bits(const Trial& a, const Trial& b) {
         CHECK((x.loss == y.loss && x.rmse == y.rmse && x.mae == y.mae && x.q2 == y.q2));
         REQUIRE(x.indicators.size() == y.indicators.size());
         for (std::size_t j = 0; j < x.indicators.size(); ++j)
-            CHECK((x.indicators[j].rmse == y.indicators[j].rmse && x.indicators[j].mae == y.indicators[j].mae && x.indicators[j].mape == y.indicators[j].mape &&
-                   x.indicators[j].q2 == y.indicators[j].q2));
+            CHECK((x.indicators[j].rmse == y.indicators[j].rmse && x.indicators[j].mae == y.indicators[j].mae &&
+                   x.indicators[j].mape == y.indicators[j].mape && x.indicators[j].q2 == y.indicators[j].q2));
     }
     for (std::size_t t = 0; t < a.whole.size(); ++t)
-        for (std::size_t e = 0; e < a.whole[t].fit.equations.size(); ++e) CHECK(a.whole[t].fit.equations[e].slopes == b.whole[t].fit.equations[e].slopes);
+        for (std::size_t e = 0; e < a.whole[t].fit.equations.size(); ++e)
+            CHECK(a.whole[t].fit.equations[e].slopes == b.whole[t].fit.equations[e].slopes);
     CHECK(a.full_model.sse == b.full_model.sse);
     CHECK(a.errors.products == b.errors.products);
     CHECK(a.errors.squares == b.errors.squares);

@@ -24,7 +24,8 @@ TEST_CASE("an indicator that is constant in a training fold is a fault with colu
     const SmallContest contest = prepare(study_text(), answers.csv());
     for (const unsigned threads : {1U, 3U})
         CHECK(fault_of([&] { run(contest, threads); }) ==
-              fmt::format("refits.csv: column \"skl2\": has one and the same value in all training rows of repeat 1, fold {}; it cannot be standardised there\n"
+              fmt::format("refits.csv: column \"skl2\": has one and the same value in all training rows of repeat 1, "
+                          "fold {}; it cannot be standardised there\n"
                           "drop the indicator, or use more folds, so that each trains on more rows",
                           contest.plan.fold(0, 17) + 1));
     answers.values(3, answers.at("skl2")) = 5;
@@ -40,14 +41,17 @@ TEST_CASE("an indicator with no answer left in a training fold is the same fault
     SmallContest contest = prepare(study_text("folds: 2, repeats: 1", ", rows: mean"), answers.csv());
     for (std::size_t i = 0; i < 40; ++i) contest.plan.fold_of[i] = i == 17 || i == 18 || i > 30 ? 1 : 0;
     CHECK(fault_of([&] { run(contest); }) ==
-          "refits.csv: column \"skl2\": has one and the same value in all training rows of repeat 1, fold 2; it cannot be standardised there\n"
+          "refits.csv: column \"skl2\": has one and the same value in all training rows of repeat 1, fold 2; it cannot "
+          "be standardised there\n"
           "drop the indicator, or use more folds, so that each trains on more rows");
 }
 
 TEST_CASE("a theory that cannot be fitted is kept with its reason, and the others are as without it", "[trial]") {
     Answers answers = invented_answers(60);
-    // Skill's indicators run together while delivery follows their difference, so that mode B weighs them with both signs.
-    answers.column("skl2") = answers.column("skl1").array() + 0.3 * (answers.column("dlv1").array() - 4) + 0.1 * answers.column("pln1").array();
+    // Skill's indicators run together while delivery follows their difference, so that mode B weighs them with both
+    // signs.
+    answers.column("skl2") = answers.column("skl1").array() + 0.3 * (answers.column("dlv1").array() - 4) +
+                             0.1 * answers.column("pln1").array();
     std::string constructs = kConstructs;
     constructs.replace(constructs.find("[\"skl*\"]"), 8, "[skl1, skl2]");
     constructs += "metric: response\n";
@@ -55,16 +59,21 @@ TEST_CASE("a theory that cannot be fitted is kept with its reason, and the other
   - {name: one, equations: {delivery: [planning, supply]}}
   - {name: two, equations: {delivery: [{minimum: [planning, supply]}]}}
   - {name: three, equations: {delivery: [planning, )";
-    const Trial trial = run(prepare(study_text("folds: 5, repeats: 4", "", constructs, good + "skill]}}\n"), answers.csv()));
+    const Trial trial =
+        run(prepare(study_text("folds: 5, repeats: 4", "", constructs, good + "skill]}}\n"), answers.csv()));
     REQUIRE(trial.contestants.size() == 5);
     const ContestantLosses& failed = trial.contestants[2];
     CHECK(failed.name == "three");
     CHECK(failed.failed);
-    CHECK(failed.reason == "in repeat 1, fold 1: metric: response needs indicator weights of one sign, but those of \"skill\" differ in sign; reverse or drop an "
-                           "indicator, or use weights: equal");
+    CHECK(failed.reason ==
+          "in repeat 1, fold 1: metric: response needs indicator weights of one sign, but those of \"skill\" differ in "
+          "sign; reverse or drop an "
+          "indicator, or use weights: equal");
     CHECK(trial.whole[2].failed);
-    CHECK(trial.whole[2].reason == "metric: response needs indicator weights of one sign, but those of \"skill\" differ in sign; reverse or drop an indicator, "
-                                   "or use weights: equal");
+    CHECK(trial.whole[2].reason ==
+          "metric: response needs indicator weights of one sign, but those of \"skill\" differ in sign; reverse or "
+          "drop an indicator, "
+          "or use weights: equal");
     CHECK(std::isnan(trial.full_model.sse(2)));
     CHECK(trial.full_model.rank == 4);  // 1, planning, supply, minimum: nothing of the failed theory
     std::string equal = constructs;
@@ -86,10 +95,12 @@ TEST_CASE("a theory that fails in one split only names the first such split", "[
     CHECK_FALSE(trial.whole[0].failed);
     CHECK(trial.contestants[0].failed);
     CHECK(trial.contestants[0].reason ==
-          fmt::format("in repeat 1, fold {}: weights: mode_b of \"skill\" needs indicators that are no linear combinations of each other; drop one or use mode_a",
+          fmt::format("in repeat 1, fold {}: weights: mode_b of \"skill\" needs indicators that are no linear "
+                      "combinations of each other; drop one or use mode_a",
                       contest.plan.fold(0, 23) + 1));
     CHECK_FALSE(trial.contestants[5].failed);
-    CHECK(trial.contestants[5].rank_deficient_splits == 4);  // the linear benchmark takes the smallest-norm solution there, once a repeat
+    CHECK(trial.contestants[5].rank_deficient_splits ==
+          4);  // the linear benchmark takes the smallest-norm solution there, once a repeat
 }
 
 TEST_CASE("a geometric mean without a value fails its theory, in training or in a held-out row", "[trial]") {
@@ -112,16 +123,22 @@ metric: response
     const Trial trial = run(contest);
     CHECK_FALSE(trial.contestants[0].failed);
     CHECK(trial.whole[1].failed);
-    CHECK(trial.whole[1].reason == "geometric_mean(planning, skill) has no value in some training row: a score there is zero or negative; use minimum or product, or "
-                                   "items that start at 1");
+    CHECK(trial.whole[1].reason ==
+          "geometric_mean(planning, skill) has no value in some training row: a score there is zero or negative; use "
+          "minimum or product, or "
+          "items that start at 1");
     const bool first_fold_trains_on_it = contest.plan.fold(0, 9) != 0;
-    CHECK(trial.contestants[1].reason ==
-          (first_fold_trains_on_it ? "in repeat 1, fold 1: " + trial.whole[1].reason
-                                   : "in repeat 1, fold 1: a held-out row has no finite prediction: a score there is zero, negative or far outside the training rows"));
+    CHECK(trial.contestants[1].reason == (first_fold_trains_on_it
+                                              ? "in repeat 1, fold 1: " + trial.whole[1].reason
+                                              : "in repeat 1, fold 1: a held-out row has no finite prediction: a score "
+                                                "there is zero, negative or far outside the training rows"));
     // The other way round: the row stands in the first fold.
-    for (std::size_t i = 0; i < 40; ++i) contest.plan.fold_of[i] = (contest.plan.fold_of[i] + 4 - contest.plan.fold(0, 9) + (first_fold_trains_on_it ? 0 : 1)) % 4;
+    for (std::size_t i = 0; i < 40; ++i)
+        contest.plan.fold_of[i] =
+            (contest.plan.fold_of[i] + 4 - contest.plan.fold(0, 9) + (first_fold_trains_on_it ? 0 : 1)) % 4;
     CHECK(run(contest).contestants[1].reason ==
-          (first_fold_trains_on_it ? "in repeat 1, fold 1: a held-out row has no finite prediction: a score there is zero, negative or far outside the training rows"
+          (first_fold_trains_on_it ? "in repeat 1, fold 1: a held-out row has no finite prediction: a score there is "
+                                     "zero, negative or far outside the training rows"
                                    : "in repeat 1, fold 1: " + trial.whole[1].reason));
 }
 

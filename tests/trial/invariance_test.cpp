@@ -33,7 +33,8 @@ std::vector<Index> counting(Index n) {
 
 TEST_CASE("one, two and five threads give the same bits", "[trial]") {
     for (const char* rows : {"", ", rows: mean"}) {
-        const SmallContest contest = prepare(study_text("folds: 7, repeats: 12, mediators: predicted", rows), with_gaps(invented_answers(120)).csv());
+        const SmallContest contest = prepare(study_text("folds: 7, repeats: 12, mediators: predicted", rows),
+                                             with_gaps(invented_answers(120)).csv());
         const Trial one = run(contest, 1);
         check_same_bits(one, run(contest, 2));
         check_same_bits(one, run(contest, 5));
@@ -56,7 +57,8 @@ TEST_CASE("the order of the columns changes nothing", "[trial]") {
     std::vector<Index> backwards = counting(11);
     std::reverse(backwards.begin(), backwards.end());
     const std::string study = study_text("folds: 5, repeats: 4, mediators: predicted", ", rows: mean");
-    const Trial one = run(prepare(study, answers.csv())), two = run(prepare(study, in_order(answers, counting(90), backwards).csv()));
+    const Trial one = run(prepare(study, answers.csv())),
+                two = run(prepare(study, in_order(answers, counting(90), backwards).csv()));
     CHECK(two.contestants[0].indicators[0].name == "dlv3");
     CHECK(disagreement(one, two) < 1e-10);
 }
@@ -72,7 +74,8 @@ TEST_CASE("the order of the rows within their folds changes nothing", "[trial]")
     SmallContest moved = prepare(study, in_order(answers, order, counting(11)).csv());
     for (int r = 0; r < 4; ++r)
         for (std::size_t i = 0; i < 90; ++i)
-            moved.plan.fold_of[static_cast<std::size_t>(r) * 90 + i] = contest.plan.fold(r, static_cast<std::size_t>(order[i]));
+            moved.plan.fold_of[static_cast<std::size_t>(r) * 90 + i] =
+                contest.plan.fold(r, static_cast<std::size_t>(order[i]));
     CHECK(disagreement(run(contest), run(moved), place) < 1e-10);
 }
 
@@ -87,7 +90,8 @@ TEST_CASE("a linear rescaling of an indicator changes nothing, predictor or outc
         const Trial trial = run(prepare(study, rescaled.csv()));
         CHECK(disagreement(plain, trial) < 1e-10);
         const bool outcome = std::string(name) == "dlv2";
-        CHECK(trial.contestants[1].indicators[1].rmse == Approx(plain.contestants[1].indicators[1].rmse * (outcome ? 12.5 : 1)).epsilon(1e-10));
+        CHECK(trial.contestants[1].indicators[1].rmse ==
+              Approx(plain.contestants[1].indicators[1].rmse * (outcome ? 12.5 : 1)).epsilon(1e-10));
         CHECK(trial.contestants[1].indicators[1].q2 == Approx(plain.contestants[1].indicators[1].q2).epsilon(1e-9));
     }
 }
@@ -110,7 +114,8 @@ TEST_CASE("a reversed item equals the item recoded in the data", "[trial]") {
     const Trial recoded = run(prepare(study_text(trial, "", plain), answers.csv()));
     for (const char* name : {"pln2", "dlv3"}) answers.column(name) = 8 - answers.column(name).array();
     check_same_bits(recoded, run(prepare(study_text(trial, "", reversed), answers.csv())));
-    CHECK(disagreement(recoded, run(prepare(study_text(trial, "", plain), answers.csv()))) > 1e-2);  // so that the reversal matters
+    CHECK(disagreement(recoded, run(prepare(study_text(trial, "", plain), answers.csv()))) >
+          1e-2);  // so that the reversal matters
 }
 
 TEST_CASE("a theory and its renamed copy differ by exactly 0 on every row", "[trial]") {
@@ -121,7 +126,10 @@ TEST_CASE("a theory and its renamed copy differ by exactly 0 on every row", "[tr
         copy.replace(copy.find(name), 0, "other ");
         theories += "  - " + copy + "\n";
     }
-    const Trial trial = run(prepare(study_text("folds: 5, repeats: 4, mediators: predicted", ", rows: mean", kConstructs, theories), with_gaps(invented_answers(90)).csv()), 2);
+    const Trial trial =
+        run(prepare(study_text("folds: 5, repeats: 4, mediators: predicted", ", rows: mean", kConstructs, theories),
+                    with_gaps(invented_answers(90)).csv()),
+            2);
     for (std::size_t t = 0; t < 4; ++t) {
         CHECK(trial.contestants[t + 4].name == "other " + trial.contestants[t].name);
         CHECK((trial.contestants[t].row_loss - trial.contestants[t + 4].row_loss).isZero(0));
@@ -142,11 +150,14 @@ TEST_CASE("another theory in the contest changes no bit of the others", "[trial]
     const std::string data = invented_answers(90).csv();
     const Trial four = run(prepare(study_text(), data));
     std::string theories = kTheories;
-    theories.erase(theories.find("  - {name: amplifying"), theories.find("  - {name: chain") - theories.find("  - {name: amplifying"));
-    const Trial three = run(prepare(study_text("folds: 5, repeats: 4, seed: 3, mediators: predicted", "", kConstructs, theories), data));
+    theories.erase(theories.find("  - {name: amplifying"),
+                   theories.find("  - {name: chain") - theories.find("  - {name: amplifying"));
+    const Trial three = run(
+        prepare(study_text("folds: 5, repeats: 4, seed: 3, mediators: predicted", "", kConstructs, theories), data));
     CHECK(three.contestants[0].row_loss == four.contestants[0].row_loss);
     CHECK(three.contestants[1].row_loss == four.contestants[2].row_loss);
     CHECK(three.contestants[2].row_loss == four.contestants[3].row_loss);
     CHECK(three.contestants[3].row_loss == four.contestants[4].row_loss);  // training mean
-    CHECK(three.contestants[4].row_loss == four.contestants[5].row_loss);  // the linear benchmark has the same predictors
+    CHECK(three.contestants[4].row_loss ==
+          four.contestants[5].row_loss);  // the linear benchmark has the same predictors
 }

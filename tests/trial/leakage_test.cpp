@@ -19,7 +19,8 @@ std::string one_outcome(const std::string& mediators) {
     return study_text("folds: 6, repeats: 1, loss: absolute, mediators: " + mediators, ", rows: mean", kOneOutcome);
 }
 
-/// What each contestant predicted for a row, from a run in which that row's outcome is so large that its error has a known sign.
+/// What each contestant predicted for a row, from a run in which that row's outcome is so large that its error has a
+/// known sign.
 VectorXd predictions(const std::string& study, Answers answers, Index row, double outcome) {
     answers.values(row, answers.at("dlv1")) = outcome;
     const Trial trial = run(prepare(study, answers.csv()));
@@ -57,7 +58,8 @@ TEST_CASE("changing a held-out row's outcome never changes its own prediction", 
 TEST_CASE("changing a held-out row's predictors never changes another held-out row's prediction", "[trial]") {
     const Answers answers = invented_answers(72);
     for (const char* mediators : {"measured", "predicted"}) {
-        const std::string study = study_text(std::string("folds: 6, repeats: 1, mediators: ") + mediators, ", rows: mean");
+        const std::string study =
+            study_text(std::string("folds: 6, repeats: 1, mediators: ") + mediators, ", rows: mean");
         const SmallContest contest = prepare(study, answers.csv());
         const Trial before = run(contest);
         for (const Index row : {0, 33}) {
@@ -72,13 +74,17 @@ TEST_CASE("changing a held-out row's predictors never changes another held-out r
                     const VectorXd& y = after.contestants[c].row_loss;
                     double same_fold = 0, other_folds = 0;
                     for (Index i = 0; i < 72; ++i) {
-                        const bool together = contest.plan.fold(0, static_cast<std::size_t>(i)) == contest.plan.fold(0, static_cast<std::size_t>(row));
-                        if (i != row) (together ? same_fold : other_folds) = std::max(together ? same_fold : other_folds, std::fabs(x(i) - y(i)));
+                        const bool together = contest.plan.fold(0, static_cast<std::size_t>(i)) ==
+                                              contest.plan.fold(0, static_cast<std::size_t>(row));
+                        if (i != row)
+                            (together ? same_fold : other_folds) =
+                                std::max(together ? same_fold : other_folds, std::fabs(x(i) - y(i)));
                     }
-                    INFO(before.contestants[c].name << ", row " << row << ", value " << value << ", mediators " << mediators);
+                    INFO(before.contestants[c].name << ", row " << row << ", value " << value << ", mediators "
+                                                    << mediators);
                     CHECK(same_fold < 1e-10);
                     if (before.contestants[c].name == "training mean") continue;
-                    CHECK(other_folds > 1e-6);           // where the row was used for training it must matter
+                    CHECK(other_folds > 1e-6);                 // where the row was used for training it must matter
                     CHECK(std::fabs(x(row) - y(row)) > 1e-6);  // and it changes its own prediction
                 }
             }
@@ -93,7 +99,8 @@ TEST_CASE("a gap in a held-out row is filled with the mean of the training rows"
   delivery: {indicators: [dlv1]}
 target: delivery
 )",
-                                         "theories:\n  - {name: line, equations: {delivery: [planning]}}\n  - {name: bent, equations: {delivery: [{square: planning}]}}\n");
+                                         "theories:\n  - {name: line, equations: {delivery: [planning]}}\n  - {name: "
+                                         "bent, equations: {delivery: [{square: planning}]}}\n");
     answers.values(12, answers.at("pln1")) = std::numeric_limits<double>::quiet_NaN();
     const Trial trial = run(prepare(study, answers.csv()));
     // At the mean of the predictor a line predicts the mean of the outcome, as the training mean does.

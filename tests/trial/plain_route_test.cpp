@@ -12,8 +12,11 @@ namespace {
 /// Rows of a sample as one block of their own.
 struct OwnRows {
     MatrixXd values, gaps;
-    OwnRows(const Sample& sample, const std::vector<Index>& rows) : values(sample.values(rows, Eigen::indexing::all)), gaps(sample.gaps(rows, Eigen::indexing::all)) {}
-    RowBlock block() const { return {values.data(), gaps.size() > 0 ? gaps.data() : nullptr, values.rows(), values.rows()}; }
+    OwnRows(const Sample& sample, const std::vector<Index>& rows)
+        : values(sample.values(rows, Eigen::indexing::all)), gaps(sample.gaps(rows, Eigen::indexing::all)) {}
+    RowBlock block() const {
+        return {values.data(), gaps.size() > 0 ? gaps.data() : nullptr, values.rows(), values.rows()};
+    }
 };
 
 /// Fits a contestant to rows in one piece: moments in two passes, designs by one matrix product.
@@ -41,14 +44,17 @@ std::vector<VectorXd> plain_losses(const SmallContest& contest, const Trial& tri
     const std::vector<Blueprint> blueprints = build_blueprints(contest.study, contest.survey, sample);
     const std::vector<int> target = blueprints.front().target_columns();
     std::vector<std::unique_ptr<Contestant>> contestants;
-    for (const Blueprint& blueprint : blueprints) contestants.push_back(std::make_unique<TheoryContestant>(sample, blueprint, false));
+    for (const Blueprint& blueprint : blueprints)
+        contestants.push_back(std::make_unique<TheoryContestant>(sample, blueprint, false));
     contestants.push_back(std::make_unique<TrainingMean>(target));
-    contestants.push_back(std::make_unique<LinearBenchmark>(sample, target, benchmark_columns(blueprints, contest.survey)));
+    contestants.push_back(
+        std::make_unique<LinearBenchmark>(sample, target, benchmark_columns(blueprints, contest.survey)));
     std::vector<VectorXd> losses(contestants.size(), VectorXd::Zero(sample.n));
     for (int r = 0; r < contest.plan.repeats; ++r)
         for (std::uint32_t k = 0; k < static_cast<std::uint32_t>(contest.plan.folds); ++k) {
             std::vector<Index> in, out;
-            for (Index i = 0; i < sample.n; ++i) (contest.plan.fold(r, static_cast<std::size_t>(i)) == k ? out : in).push_back(i);
+            for (Index i = 0; i < sample.n; ++i)
+                (contest.plan.fold(r, static_cast<std::size_t>(i)) == k ? out : in).push_back(i);
             const OwnRows held_out(sample, out);
             for (std::size_t c = 0; c < contestants.size(); ++c) {
                 const Fit fit = plain_fit(sample, *contestants[c], in);
@@ -57,10 +63,12 @@ std::vector<VectorXd> plain_losses(const SmallContest& contest, const Trial& tri
                 contestants[c]->predict(fit, held_out.block(), room, predicted.data(), predicted.rows());
                 for (std::size_t i = 0; i < out.size(); ++i)
                     for (std::size_t j = 0; j < target.size(); ++j) {
-                        const double error = sample.values(out[i], target[j]) - predicted(static_cast<Index>(i), static_cast<Index>(j));
+                        const double error =
+                            sample.values(out[i], target[j]) - predicted(static_cast<Index>(i), static_cast<Index>(j));
                         const double scaled = error / trial.unit(static_cast<Index>(j));
-                        losses[c](out[i]) += (contest.study.trial.loss == Loss::absolute ? std::fabs(scaled) : scaled * scaled) /
-                                             static_cast<double>(target.size()) / contest.plan.repeats;
+                        losses[c](out[i]) +=
+                            (contest.study.trial.loss == Loss::absolute ? std::fabs(scaled) : scaled * scaled) /
+                            static_cast<double>(target.size()) / contest.plan.repeats;
                     }
             }
         }
@@ -74,13 +82,15 @@ double disagreement_with_plain(const SmallContest& contest, const Trial& trial) 
     for (std::size_t c = 0; c < plain.size(); ++c) {
         const ContestantLosses& losses = trial.contestants[c];
         REQUIRE_FALSE(losses.failed);
-        worst = std::max(worst, ((losses.row_loss - plain[c]).array().abs() / plain[c].array().abs().max(1e-3)).maxCoeff());
+        worst =
+            std::max(worst, ((losses.row_loss - plain[c]).array().abs() / plain[c].array().abs().max(1e-3)).maxCoeff());
         worst = std::max(worst, std::fabs(losses.loss - plain[c].mean()) / plain[c].mean());
         if (contest.plan.repeats > 1) continue;
         for (int k = 0; k < contest.plan.folds; ++k) {
             double sum = 0, rows = 0;
             for (Index i = 0; i < plain[c].size(); ++i)
-                if (contest.plan.fold(0, static_cast<std::size_t>(i)) == static_cast<std::uint32_t>(k)) sum += plain[c](i), ++rows;
+                if (contest.plan.fold(0, static_cast<std::size_t>(i)) == static_cast<std::uint32_t>(k))
+                    sum += plain[c](i), ++rows;
             worst = std::max(worst, std::fabs(losses.split_loss(k) - sum / rows) / (sum / rows));
         }
     }
@@ -99,7 +109,8 @@ Answers with_gaps(Answers answers) {
 
 // 40,000 rows are two segments of 32,768 rows and forty blocks of 1,024; the last block is not full.
 TEST_CASE("several segments of rows give the losses of a plain single block, for any number of threads", "[trial]") {
-    const SmallContest contest = prepare(study_text("folds: 3, repeats: 1, mediators: predicted", ", rows: mean"), with_gaps(invented_answers(40001)).csv());
+    const SmallContest contest = prepare(study_text("folds: 3, repeats: 1, mediators: predicted", ", rows: mean"),
+                                         with_gaps(invented_answers(40001)).csv());
     const Trial trial = run(contest, 2);
     CHECK(disagreement_with_plain(contest, trial) < 1e-10);
     check_same_bits(trial, run(contest, 1));
@@ -107,14 +118,16 @@ TEST_CASE("several segments of rows give the losses of a plain single block, for
 }
 
 TEST_CASE("more than 256 folds, taken in several waves, give the losses of a plain single block", "[trial]") {
-    const SmallContest contest = prepare(study_text("folds: 300, mediators: predicted, loss: absolute", ", rows: mean"), with_gaps(invented_answers(300)).csv());
+    const SmallContest contest = prepare(study_text("folds: 300, mediators: predicted, loss: absolute", ", rows: mean"),
+                                         with_gaps(invented_answers(300)).csv());
     REQUIRE(contest.plan.repeats == 1);
     const Trial trial = run(contest, 2);
     CHECK(disagreement_with_plain(contest, trial) < 1e-10);
 }
 
 TEST_CASE("many repeats, taken in several waves, give the mean loss of a plain single block", "[trial]") {
-    const SmallContest contest = prepare(study_text("folds: 5, repeats: 230", ", rows: mean"), with_gaps(invented_answers(48)).csv());
+    const SmallContest contest =
+        prepare(study_text("folds: 5, repeats: 230", ", rows: mean"), with_gaps(invented_answers(48)).csv());
     const Trial trial = run(contest, 2);
     CHECK(trial.repeats == 230);
     CHECK(trial.contestants[0].split_loss.size() == 1150);
@@ -125,19 +138,22 @@ TEST_CASE("many repeats, taken in several waves, give the mean loss of a plain s
 TEST_CASE("raw scores far from zero lose no digits in products", "[trial]") {
     Answers answers = invented_answers(150);
     for (const char* name : {"pln1", "pln2", "pln3"}) answers.column(name).array() += 1000;
-    const SmallContest contest = prepare(study_text("folds: 5, repeats: 2", "", kConstructs + "metric: response\n", R"(theories:
+    const SmallContest contest =
+        prepare(study_text("folds: 5, repeats: 2", "", kConstructs + "metric: response\n", R"(theories:
   - {name: amplifying, equations: {delivery: [{crossed: [planning, supply]}]}}
   - {name: bent, equations: {delivery: [planning, {square: planning}]}}
 )"),
-                                         answers.csv());
+                answers.csv());
     const Trial trial = run(contest);
-    // On scales with another zero the products of crossed terms are other columns of the same space: the same predictions.
+    // On scales with another zero the products of crossed terms are other columns of the same space: the same
+    // predictions.
     for (const char* name : {"pln1", "pln2", "pln3"}) answers.column(name).array() -= 1000;
     const SmallContest near = prepare(contest.study.source, answers.csv());
     CHECK(disagreement(trial, run(near)) < 1e-7);
 }
 
-// Single indicators need no weights: everything is ordinary least squares on raw rows, here by an orthogonal decomposition.
+// Single indicators need no weights: everything is ordinary least squares on raw rows, here by an orthogonal
+// decomposition.
 TEST_CASE("losses of single-indicator theories are those of least squares on the raw rows", "[trial]") {
     const Answers answers = invented_answers(60);
     const SmallContest contest = prepare(study_text("folds: 6, repeats: 3", "", R"(constructs:
@@ -154,7 +170,8 @@ metric: response
 )"),
                                          answers.csv());
     const Trial trial = run(contest);
-    const VectorXd p = answers.values.col(0), s = answers.values.col(3), y = answers.values.col(8), one = VectorXd::Ones(60);
+    const VectorXd p = answers.values.col(0), s = answers.values.col(3), y = answers.values.col(8),
+                   one = VectorXd::Ones(60);
     const double unit = std::sqrt((y.array() - y.mean()).square().sum() / 59);
     CHECK(trial.unit(0) == Approx(unit).epsilon(1e-14));
     std::vector<MatrixXd> designs(5);
@@ -163,13 +180,15 @@ metric: response
     designs[2] = (MatrixXd(60, 2) << one, p.cwiseMin(s)).finished();
     designs[3] = one;
     designs[4] = designs[0];
-    MatrixXd errors = MatrixXd::Zero(60, 3 * 5), mean_errors = MatrixXd::Zero(60, 5);  // repeat by repeat, contestant by contestant
+    MatrixXd errors = MatrixXd::Zero(60, 3 * 5),
+             mean_errors = MatrixXd::Zero(60, 5);  // repeat by repeat, contestant by contestant
     std::vector<VectorXd> squared(5, VectorXd::Zero(60)), absolute = squared, shares = squared;
     for (std::size_t c = 0; c < 5; ++c)
         for (int r = 0; r < 3; ++r)
             for (std::uint32_t k = 0; k < 6; ++k) {
                 std::vector<Index> in, out;
-                for (Index i = 0; i < 60; ++i) (contest.plan.fold(r, static_cast<std::size_t>(i)) == k ? out : in).push_back(i);
+                for (Index i = 0; i < 60; ++i)
+                    (contest.plan.fold(r, static_cast<std::size_t>(i)) == k ? out : in).push_back(i);
                 const VectorXd b = designs[c](in, Eigen::indexing::all).householderQr().solve(y(in));
                 for (const Index i : out) {
                     const double error = y(i) - designs[c].row(i).dot(b);
@@ -201,11 +220,15 @@ metric: response
     const Trial absolute_trial = run(absolute_contest);
     for (std::size_t a = 0; a < 3; ++a) {
         CHECK((absolute_trial.contestants[a].row_loss - absolute[a] / unit).cwiseAbs().maxCoeff() < 1e-12);
-        CHECK((absolute_trial.errors.squares.col(static_cast<Index>(a)) - squared[a] / (unit * unit)).cwiseAbs().maxCoeff() < 1e-12);
+        CHECK((absolute_trial.errors.squares.col(static_cast<Index>(a)) - squared[a] / (unit * unit))
+                  .cwiseAbs()
+                  .maxCoeff() < 1e-12);
         for (std::size_t b = 0; b < a; ++b) {
             VectorXd product = VectorXd::Zero(60);
             for (Index r = 0; r < 3; ++r)
-                product += errors.col(5 * r + static_cast<Index>(a)).cwiseProduct(errors.col(5 * r + static_cast<Index>(b))) / (3 * unit * unit);
+                product +=
+                    errors.col(5 * r + static_cast<Index>(a)).cwiseProduct(errors.col(5 * r + static_cast<Index>(b))) /
+                    (3 * unit * unit);
             CHECK((trial.errors.products.col(ErrorProducts::column(a, b)) - product).cwiseAbs().maxCoeff() < 1e-12);
             CHECK(ErrorProducts::column(a, b) == ErrorProducts::column(b, a));
         }

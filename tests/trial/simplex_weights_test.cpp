@@ -124,7 +124,8 @@ TEST_CASE("stacking weights have the smallest spread of all combinations, howeve
         }
 }
 
-TEST_CASE("two theories share by the textbook formula, uncorrelated ones in inverse proportion to their squared errors", "[simplex]") {
+TEST_CASE("two theories share by the textbook formula, uncorrelated ones in inverse proportion to their squared errors",
+          "[simplex]") {
     MatrixXd g(2, 2);
     g << 4, 1, 1, 2;  // w1 = (g22 - g12) / (g11 + g22 - 2 g12)
     CHECK(stacking_weights(g)(0) == Approx(0.25).margin(1e-13));

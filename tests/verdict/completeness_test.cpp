@@ -30,9 +30,10 @@ const std::string kTheories = R"(theories:
   - {name: planning only, equations: {delivery: [planning]}}
 )";
 
-std::string study_text(const std::string& trial, const std::string& data_keys = "", const std::string& theories = kTheories,
-                       const std::string& constructs = kConstructs) {
-    return "study: refits\ndata: {file: refits.csv" + data_keys + "}\n" + constructs + theories + "trial: {" + trial + "}\n";
+std::string study_text(const std::string& trial, const std::string& data_keys = "",
+                       const std::string& theories = kTheories, const std::string& constructs = kConstructs) {
+    return "study: refits\ndata: {file: refits.csv" + data_keys + "}\n" + constructs + theories + "trial: {" + trial +
+           "}\n";
 }
 
 struct Measured {
@@ -45,11 +46,14 @@ Measured measure(SmallContest contest, unsigned threads = 1, const CompletenessL
     Measured out;
     out.contest = std::move(contest);
     out.trial = run_trial(out.contest.study, out.contest.survey, *out.contest.sample, out.contest.plan, threads);
-    out.report = measure_completeness(out.contest.study, out.contest.survey, *out.contest.sample, out.contest.plan, out.trial, threads, limits);
+    out.report = measure_completeness(out.contest.study, out.contest.survey, *out.contest.sample, out.contest.plan,
+                                      out.trial, threads, limits);
     return out;
 }
 
-Measured measure(const std::string& study, const Answers& answers, const CompletenessLimits& limits = {}) { return measure(prepare(study, answers.csv()), 1, limits); }
+Measured measure(const std::string& study, const Answers& answers, const CompletenessLimits& limits = {}) {
+    return measure(prepare(study, answers.csv()), 1, limits);
+}
 
 /// The invented answers with delivery a sum of the three, and noise.
 Answers linear_answers(Index n, double share) {
@@ -88,25 +92,31 @@ trial: {folds: 4, repeats: 1}
     REQUIRE(measured.report.flexible_row_loss.size() == 20);
     double sum = 0;
     for (std::size_t i = 0; i < 20; ++i) {
-        CHECK(measured.report.flexible_row_loss(static_cast<Index>(i)) == Approx(std::stod(frozen[i + 1][2])).epsilon(1e-9));
+        CHECK(measured.report.flexible_row_loss(static_cast<Index>(i)) ==
+              Approx(std::stod(frozen[i + 1][2])).epsilon(1e-9));
         CHECK(measured.report.row_index[i] == i);
         sum += std::stod(frozen[i + 1][2]);
     }
     CHECK(measured.report.loss_flexible == Approx(sum / 20).epsilon(1e-9));
     CHECK(measured.report.loss_mean == Approx(measured.trial.contestants[2].loss).epsilon(1e-12));
-    CHECK(measured.report.q2_flexible == Approx(1 - sum / 20 / measured.trial.contestants[2].loss).epsilon(1e-9));  // squared loss, one repeat
+    CHECK(measured.report.q2_flexible ==
+          Approx(1 - sum / 20 / measured.trial.contestants[2].loss).epsilon(1e-9));  // squared loss, one repeat
 }
 
-TEST_CASE("length-scale and penalty are those with the smallest error of refits without each training row", "[verdict]") {
+TEST_CASE("length-scale and penalty are those with the smallest error of refits without each training row",
+          "[verdict]") {
     Answers answers = linear_answers(48, 0);
     for (Index i = 0; i < 48; ++i)  // a bent truth, so that no smooth function is best
-        for (Index j = 8; j < 11; ++j) answers.values(i, j) = 0.3 * answers.values(i, j) + std::sin(2 * answers.values(i, 0)) + 0.3 * answers.values(i, 4);
+        for (Index j = 8; j < 11; ++j)
+            answers.values(i, j) =
+                0.3 * answers.values(i, j) + std::sin(2 * answers.values(i, 0)) + 0.3 * answers.values(i, 4);
     answers.values.col(10) *= 50;  // large numbers count no more than small ones
     RandomStream stream(8, Purpose::simulation, 2);
     for (Index i = 0; i < 48; ++i) answers.values(i, 10) += 100 * bell(stream);
     const SmallContest contest = prepare(study_text("folds: 3, repeats: 1", "", kTheories), answers.csv());
     FlexibleTask task;
-    task.predictors = {contest.survey.measurement(0, "planning")->variables[0], contest.survey.measurement(0, "skill")->variables[1]};
+    task.predictors = {contest.survey.measurement(0, "planning")->variables[0],
+                       contest.survey.measurement(0, "skill")->variables[1]};
     task.targets = contest.survey.measurement(0, "delivery")->variables;
     task.folds = 3;
     task.most_choice_rows = 1000;
@@ -137,7 +147,8 @@ TEST_CASE("length-scale and penalty are those with the smallest error of refits 
                         if (i != out) others.push_back(i);
                     const MatrixXd kept = x(others, Eigen::indexing::all);
                     const double length = tried * median_distance(x);
-                    const KernelRidge fit = fit_kernel_ridge(gaussian_kernel(kept, kept, length), y(others, Eigen::indexing::all), penalty_at(step));
+                    const KernelRidge fit = fit_kernel_ridge(gaussian_kernel(kept, kept, length),
+                                                             y(others, Eigen::indexing::all), penalty_at(step));
                     error += (y.row(out) - fit.predict(gaussian_kernel(x.row(out), kept, length))).squaredNorm();
                 }
                 if (error < least) {
@@ -160,28 +171,34 @@ TEST_CASE("completeness is the same for any number of threads, and comes from th
     small.draw_rows = 60;
     const CompletenessReport one = measure(prepare(study, answers.csv()), 1, small).report;
     const CompletenessReport four = measure(prepare(study, answers.csv()), 4, small).report;
-    const CompletenessReport other = measure(prepare(study_text("folds: 5, repeats: 3, seed: 4"), answers.csv()), 1, small).report;
+    const CompletenessReport other =
+        measure(prepare(study_text("folds: 5, repeats: 3, seed: 4"), answers.csv()), 1, small).report;
     REQUIRE(one.computed);
     CHECK(one.flexible_row_loss == four.flexible_row_loss);
     CHECK(one.note == four.note);
     for (std::size_t t = 0; t < 3; ++t) {
-        CHECK((one.theories[t].completeness == four.theories[t].completeness && one.theories[t].low == four.theories[t].low &&
-               one.theories[t].high == four.theories[t].high && one.theories[t].restrictiveness == four.theories[t].restrictiveness));
+        CHECK((one.theories[t].completeness == four.theories[t].completeness &&
+               one.theories[t].low == four.theories[t].low && one.theories[t].high == four.theories[t].high &&
+               one.theories[t].restrictiveness == four.theories[t].restrictiveness));
         CHECK(one.theories[t].low != other.theories[t].low);
         CHECK(one.theories[t].restrictiveness != other.theories[t].restrictiveness);
     }
-    CHECK(one.note == "The flexible benchmark's length-scale and penalty were chosen on 50 of each fold's training rows, then fitted to all of them. "
-                      "Restrictiveness was measured on 60 of the 90 rows, drawn from the seed.");
+    CHECK(one.note ==
+          "The flexible benchmark's length-scale and penalty were chosen on 50 of each fold's training rows, then "
+          "fitted to all of them. "
+          "Restrictiveness was measured on 60 of the 90 rows, drawn from the seed.");
 }
 
 TEST_CASE("a held-out row's outcome leaves its flexible prediction unchanged", "[verdict]") {
     Answers answers = invented_answers(60);
     answers.names.push_back("kind");
     answers.values.conservativeResize(Eigen::NoChange, 12);
-    for (Index i = 0; i < 60; ++i) answers.values(i, 11) = i == 7 ? 3 : static_cast<double>(i % 3 == 0);  // one row has a level of its own
+    for (Index i = 0; i < 60; ++i)
+        answers.values(i, 11) = i == 7 ? 3 : static_cast<double>(i % 3 == 0);  // one row has a level of its own
     answers.values(7, 0) = answers.values(20, 4) = std::numeric_limits<double>::quiet_NaN();
-    const std::string constructs = kConstructs.substr(0, kConstructs.find("  delivery")) +
-                                   "  kind: {category: kind}\n  delivery: {indicators: [dlv1]}\ncontrols: [kind]\ntarget: delivery\n";
+    const std::string constructs =
+        kConstructs.substr(0, kConstructs.find("  delivery")) +
+        "  kind: {category: kind}\n  delivery: {indicators: [dlv1]}\ncontrols: [kind]\ntarget: delivery\n";
     const std::string study = study_text("folds: 6, repeats: 1, loss: absolute", ", rows: mean", kTheories, constructs);
     for (const Index row : {Index{7}, Index{20}, Index{59}}) {
         const auto predicted = [&](double outcome) {
@@ -203,7 +220,8 @@ TEST_CASE("a level that the training rows lack counts as none of the levels", "[
     answers.names.push_back("kind");
     answers.values.conservativeResize(Eigen::NoChange, 12);
     for (Index i = 0; i < 60; ++i) answers.values(i, 11) = i == 7 ? 3 : static_cast<double>(i % 2);
-    const std::string constructs = kConstructs.substr(0, kConstructs.find("target")) + "  kind: {category: kind}\ncontrols: [kind]\ntarget: delivery\n";
+    const std::string constructs = kConstructs.substr(0, kConstructs.find("target")) +
+                                   "  kind: {category: kind}\ncontrols: [kind]\ntarget: delivery\n";
     const SmallContest contest = prepare(study_text("folds: 6, repeats: 1", "", kTheories, constructs), answers.csv());
     const LevelColumns& levels = contest.sample->categories.at(0);
     REQUIRE(levels.n_levels == 3);
@@ -244,7 +262,8 @@ TEST_CASE("a gap in a held-out row is filled with the mean of the training rows"
     CHECK(std::fabs(measure(study, answers).report.flexible_row_loss(20) - gap.report.flexible_row_loss(20)) > 1e-6);
 }
 
-TEST_CASE("where the truth is linear the additive theory is about complete, and leaving predictors out is not", "[verdict]") {
+TEST_CASE("where the truth is linear the additive theory is about complete, and leaving predictors out is not",
+          "[verdict]") {
     const Measured measured = measure(study_text("folds: 10, repeats: 2"), linear_answers(300, 1.5));
     const TheoryCompleteness& additive = measured.report.theories[0];
     const TheoryCompleteness& planning = measured.report.theories[2];
@@ -256,14 +275,19 @@ TEST_CASE("where the truth is linear the additive theory is about complete, and 
     CHECK(planning.reason.empty());
     CHECK(measured.report.note.empty());
     const auto loss = [&](std::size_t c) { return measured.trial.contestants[c].loss; };
-    CHECK(planning.completeness == Approx((loss(3) - loss(2)) / (loss(3) - measured.report.loss_flexible)).epsilon(1e-12));
-    // The interval is about as wide as linearising the ratio says: standard error of (m - t) - c (m - f), over mean(m - f).
+    CHECK(planning.completeness ==
+          Approx((loss(3) - loss(2)) / (loss(3) - measured.report.loss_flexible)).epsilon(1e-12));
+    // The interval is about as wide as linearising the ratio says: standard error of (m - t) - c (m - f), over mean(m -
+    // f).
     const VectorXd possible = measured.trial.contestants[3].row_loss - measured.report.flexible_row_loss;
-    const VectorXd apart = measured.trial.contestants[3].row_loss - measured.trial.contestants[2].row_loss - planning.completeness * possible;
-    CHECK((planning.high - planning.low) / (2 * 1.96 * standard_error(apart, {}, 0) / possible.mean()) == Approx(1).margin(0.12));
+    const VectorXd apart = measured.trial.contestants[3].row_loss - measured.trial.contestants[2].row_loss -
+                           planning.completeness * possible;
+    CHECK((planning.high - planning.low) / (2 * 1.96 * standard_error(apart, {}, 0) / possible.mean()) ==
+          Approx(1).margin(0.12));
     // Above 1 is said so.
     const TheoryCompleteness& best = additive.completeness > 1 ? additive : measured.report.theories[1];
-    CHECK((best.reason == "above 1: it predicts better than the flexible benchmark does with this many rows") == (best.completeness > 1));
+    CHECK((best.reason == "above 1: it predicts better than the flexible benchmark does with this many rows") ==
+          (best.completeness > 1));
 }
 
 TEST_CASE("noise has no completeness, and the reason says why", "[verdict]") {
@@ -272,8 +296,10 @@ TEST_CASE("noise has no completeness, and the reason says why", "[verdict]") {
     REQUIRE(report.loss_flexible >= report.loss_mean);
     for (const TheoryCompleteness& theory : report.theories) {
         CHECK((std::isnan(theory.completeness) && std::isnan(theory.low) && std::isnan(theory.high)));
-        CHECK(theory.reason == fmt::format("the flexible benchmark predicts no better than the mean (loss {:.4g} against {:.4g}), so there is no gain of "
-                                           "which a theory could reach a share", report.loss_flexible, report.loss_mean));
+        CHECK(theory.reason == fmt::format("the flexible benchmark predicts no better than the mean (loss {:.4g} "
+                                           "against {:.4g}), so there is no gain of "
+                                           "which a theory could reach a share",
+                                           report.loss_flexible, report.loss_mean));
         CHECK(theory.restrictiveness > 0);
     }
 }
@@ -284,7 +310,11 @@ TEST_CASE("a gain that may be nothing gives no completeness, with its interval i
     REQUIRE(report.loss_flexible < report.loss_mean);
     CHECK(std::isnan(report.theories[0].completeness));
     const std::string& reason = report.theories[0].reason;
-    CHECK(reason.rfind(fmt::format("the flexible benchmark's gain over the mean may be nothing (loss lower by {:.3g}, 95% interval -", report.loss_mean - report.loss_flexible), 0) == 0);
+    CHECK(reason.rfind(
+              fmt::format(
+                  "the flexible benchmark's gain over the mean may be nothing (loss lower by {:.3g}, 95% interval -",
+                  report.loss_mean - report.loss_flexible),
+              0) == 0);
     CHECK(reason.substr(reason.rfind(')')) == "), so no share of it can be given");
 }
 
@@ -298,7 +328,8 @@ TEST_CASE("a theory that fails is kept with its reason", "[verdict]") {
     const Measured measured = measure("metric: response\n" + study_text("folds: 5, repeats: 1", "", theories), answers);
     REQUIRE(measured.trial.contestants[1].failed);
     const TheoryCompleteness& failed = measured.report.theories[1];
-    CHECK((std::isnan(failed.completeness) && std::isnan(failed.restrictiveness) && std::isnan(failed.restrictiveness_se)));
+    CHECK((std::isnan(failed.completeness) && std::isnan(failed.restrictiveness) &&
+           std::isnan(failed.restrictiveness_se)));
     CHECK(failed.reason == "it could not be fitted: " + measured.trial.contestants[1].reason);
     CHECK(measured.report.theories[0].completeness > 0.3);
 }
@@ -317,7 +348,8 @@ TEST_CASE("above the limit a seeded subsample of rows stands for all", "[verdict
     CHECK(std::is_sorted(report.row_index.begin(), report.row_index.end()));
     CHECK((report.row_index.front() < 20 && report.row_index.back() > 220 && report.row_index.back() < 240));
     double mean = 0;
-    for (const std::size_t row : report.row_index) mean += measured.trial.contestants[3].row_loss(static_cast<Index>(row)) / 100;
+    for (const std::size_t row : report.row_index)
+        mean += measured.trial.contestants[3].row_loss(static_cast<Index>(row)) / 100;
     CHECK(report.loss_mean == Approx(mean).epsilon(1e-12));
     CHECK_FALSE(measure(study, answers).report.subsample);
 }
@@ -335,7 +367,8 @@ TEST_CASE("a subsample takes whole clusters while ten or more fit, and rows othe
         if (yards == 40) {
             CHECK(measured.report.rows == 96);  // sixteen clusters of six
             CHECK(clusters_of(measured).size() == 16);
-            CHECK(measured.report.note == "Completeness was measured on 96 of the 240 rows, in whole clusters drawn from the seed.");
+            CHECK(measured.report.note ==
+                  "Completeness was measured on 96 of the 240 rows, in whole clusters drawn from the seed.");
         } else {
             CHECK(measured.report.rows == 100);
             CHECK(clusters_of(measured).size() == 12);
@@ -346,7 +379,8 @@ TEST_CASE("a subsample takes whole clusters while ten or more fit, and rows othe
 }
 
 TEST_CASE("with clusters the interval is resampled by cluster", "[verdict]") {
-    // Rows in eight identical copies, each set of copies one cluster: resampling rows would see eight times the evidence.
+    // Rows in eight identical copies, each set of copies one cluster: resampling rows would see eight times the
+    // evidence.
     const Answers few = linear_answers(40, 1.5);
     Answers answers;
     answers.names = few.names;
@@ -354,8 +388,10 @@ TEST_CASE("with clusters the interval is resampled by cluster", "[verdict]") {
     answers.values.resize(320, 12);
     for (Index i = 0; i < 320; ++i) answers.values.row(i) << few.values.row(i % 40), static_cast<double>(i % 40);
     const auto width = [&](const std::string& keys, std::uint64_t seed) {
-        SmallContest contest = prepare(study_text(fmt::format("folds: 5, repeats: 1, seed: {}", seed), keys), answers.csv());
-        for (std::size_t i = 0; i < 320; ++i) contest.plan.fold_of[i] = static_cast<std::uint32_t>(i % 5);  // clusters held out whole, both times
+        SmallContest contest =
+            prepare(study_text(fmt::format("folds: 5, repeats: 1, seed: {}", seed), keys), answers.csv());
+        for (std::size_t i = 0; i < 320; ++i)
+            contest.plan.fold_of[i] = static_cast<std::uint32_t>(i % 5);  // clusters held out whole, both times
         const Measured measured = measure(std::move(contest));
         return measured.report.theories[2].high - measured.report.theories[2].low;
     };

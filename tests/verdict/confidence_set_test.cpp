@@ -20,12 +20,14 @@ MatrixXd invented_losses(Index n, const std::vector<double>& worse, std::uint32_
     MatrixXd losses(n, static_cast<Index>(worse.size()));
     for (Index i = 0; i < n; ++i) {
         const double common = 2 + std::fabs(bell(stream));
-        for (Index j = 0; j < losses.cols(); ++j) losses(i, j) = common + worse[static_cast<std::size_t>(j)] + 0.5 * bell(stream);
+        for (Index j = 0; j < losses.cols(); ++j)
+            losses(i, j) = common + worse[static_cast<std::size_t>(j)] + 0.5 * bell(stream);
     }
     return losses;
 }
 
-MatrixXd resampled(const MatrixXd& losses, std::uint64_t seed, const std::vector<int>& clusters = {}, std::size_t n_clusters = 0) {
+MatrixXd resampled(const MatrixXd& losses, std::uint64_t seed, const std::vector<int>& clusters = {},
+                   std::size_t n_clusters = 0) {
     bool grouped = true;
     const MatrixXd means = bootstrap_means(losses, clusters, n_clusters, seed, kResamples, grouped);
     CHECK_FALSE(grouped);
@@ -70,7 +72,8 @@ SetPath walk(const VectorXd& mean, const MatrixXd& boot, bool range) {
             if (d[k] / root > statistic) statistic = d[k] / root, worst = whose[k];
             null = null.cwiseMax(shifts[k] / root);
         }
-        running = std::max(running, static_cast<double>((null.array() >= statistic).count()) / static_cast<double>(boot.rows()));
+        running = std::max(running,
+                           static_cast<double>((null.array() >= statistic).count()) / static_cast<double>(boot.rows()));
         path.p[static_cast<std::size_t>(left[worst])] = running;
         path.eliminated.push_back(static_cast<std::size_t>(left[worst]));
         left.erase(left.begin() + static_cast<std::ptrdiff_t>(worst));
@@ -87,7 +90,8 @@ void check_same(const SetPath& a, const SetPath& b) {
 
 }  // namespace
 
-// Hansen, Lunde & Nason 2011: T_R is symmetric in a and b, so the largest |D_ab| is the largest D_ab over ordered pairs.
+// Hansen, Lunde & Nason 2011: T_R is symmetric in a and b, so the largest |D_ab| is the largest D_ab over ordered
+// pairs.
 TEST_CASE("both statistics walk through the set as a second reading of the paper does", "[set]") {
     for (std::uint32_t draw = 1; draw <= 6; ++draw) {
         const MatrixXd losses = invented_losses(60, {0, 0.03, 0.1, 0.12, 0.3}, draw);
@@ -106,7 +110,8 @@ TEST_CASE("of two theories, the worse has the two-sided p of the bootstrap", "[s
     const MatrixXd boot = resampled(losses, 5);
     const VectorXd d = losses.col(0) - losses.col(1);
     const double mean = d.mean();
-    const double beyond = static_cast<double>((((boot.col(0) - boot.col(1)).array() - mean).abs() >= std::fabs(mean)).count());
+    const double beyond =
+        static_cast<double>((((boot.col(0) - boot.col(1)).array() - mean).abs() >= std::fabs(mean)).count());
     const std::size_t worse = mean > 0 ? 0 : 1;
     CHECK(set.range.p[worse] == beyond / kResamples);
     CHECK(set.range.p[1 - worse] == 1);
@@ -131,7 +136,8 @@ TEST_CASE("two equal theories stand or fall together against a third", "[set]") 
     losses << two.col(0), two.col(1), two.col(0);
     for (const double rounding : {0.0, 1e-16}) {
         losses.col(2) = two.col(0) * (1 + rounding);
-        const ConfidenceSet set = confidence_set(losses, {}, 0, 2, kResamples), alone = confidence_set(two, {}, 0, 2, kResamples);
+        const ConfidenceSet set = confidence_set(losses, {}, 0, 2, kResamples),
+                            alone = confidence_set(two, {}, 0, 2, kResamples);
         CHECK(set.range.p[0] == Approx(set.range.p[2]).margin(1e-12));
         CHECK(set.range.p[0] == Approx(alone.range.p[0]).margin(1e-12));  // the pair without variance is left out
         CHECK(set.range.p[1] == 1);
@@ -153,7 +159,8 @@ TEST_CASE("clusters of one row are rows", "[set]") {
     const MatrixXd losses = invented_losses(70, {0, 0.1, 0.2});
     std::vector<int> clusters(70);
     std::iota(clusters.begin(), clusters.end(), 0);
-    const ConfidenceSet rows = confidence_set(losses, {}, 0, 4, kResamples), by_cluster = confidence_set(losses, clusters, 70, 4, kResamples);
+    const ConfidenceSet rows = confidence_set(losses, {}, 0, 4, kResamples),
+                        by_cluster = confidence_set(losses, clusters, 70, 4, kResamples);
     check_same(rows.range, by_cluster.range);
     check_same(rows.maximum, by_cluster.maximum);
 }
@@ -165,10 +172,14 @@ TEST_CASE("whole clusters are drawn, and their mean is a ratio of sums", "[set]"
     int seen[3] = {0, 0, 0};
     for (Index b = 0; b < means.rows(); ++b) {
         const double value = means(b, 0);
-        if (value == Approx(10).epsilon(1e-12)) ++seen[0];
-        else if (value == Approx(4).epsilon(1e-12)) ++seen[1];
-        else if (value == Approx(2).epsilon(1e-12)) ++seen[2];
-        else FAIL("a mean of " << value << " that no draw of two clusters has");
+        if (value == Approx(10).epsilon(1e-12))
+            ++seen[0];
+        else if (value == Approx(4).epsilon(1e-12))
+            ++seen[1];
+        else if (value == Approx(2).epsilon(1e-12))
+            ++seen[2];
+        else
+            FAIL("a mean of " << value << " that no draw of two clusters has");
     }
     CHECK(seen[0] / 2000.0 == Approx(0.25).margin(0.04));  // four Monte Carlo standard errors
     CHECK(seen[1] / 2000.0 == Approx(0.5).margin(0.045));
@@ -222,9 +233,11 @@ TEST_CASE("above 20,000 rows the rows are drawn in groups, with the same standar
     bool grouped = false;
     const MatrixXd means = bootstrap_means(losses, {}, 0, 1, kResamples, grouped);
     CHECK(grouped);
-    const VectorXd centred = losses.col(0).array() - losses.col(0).mean(), apart = means.col(0).array() - means.col(0).mean();
+    const VectorXd centred = losses.col(0).array() - losses.col(0).mean(),
+                   apart = means.col(0).array() - means.col(0).mean();
     const double se = std::sqrt(centred.squaredNorm()) / 20001;
     CHECK(means.col(0).mean() == Approx(losses.col(0).mean()).margin(4 * se / std::sqrt(2000.0)));
-    // Groups dealt at random: the variance between 5,000 groups has a relative error of sqrt(2 / 5000), the draws one of sqrt(2 / 2000).
+    // Groups dealt at random: the variance between 5,000 groups has a relative error of sqrt(2 / 5000), the draws one
+    // of sqrt(2 / 2000).
     CHECK(apart.squaredNorm() / 2000 == Approx(se * se).epsilon(4 * std::sqrt(2.0 / 5000 + 2.0 / 2000)));
 }

@@ -14,18 +14,22 @@ const TheoryReport& theory(const Judged& judged, const std::string& name) {
 
 }  // namespace
 
-// R lm, AIC, BIC on standardised columns (tests/reference/outside/models.R); additive constants cancel in the differences.
+// R lm, AIC, BIC on standardised columns (tests/reference/outside/models.R); additive constants cancel in the
+// differences.
 TEST_CASE("differences of AIC and BIC, R2 and F are R's on open data", "[verdict]") {
     std::map<std::string, Judged> contests;
-    for (const char* name : {"attitude", "swiss", "longley"}) contests.emplace(name, run_reference(std::string("reference/open_data/") + name));
+    for (const char* name : {"attitude", "swiss", "longley"})
+        contests.emplace(name, run_reference(std::string("reference/open_data/") + name));
     std::map<std::string, const TheoryReport*> first;
     for (const auto& known : frozen_table("reference/outside/models.csv")) {
         INFO(known.at("data") << ", " << known.at("theory"));
         const TheoryReport& report = theory(contests.at(known.at("data")), known.at("theory"));
         const TheoryReport& base = *first.emplace(known.at("data"), &report).first->second;
         CHECK(report.fitted.coefficients == number(known, "p"));
-        CHECK(report.criteria.aic - base.criteria.aic == Approx(number(known, "aic_minus_first")).epsilon(1e-10).margin(1e-12));
-        CHECK(report.criteria.bic - base.criteria.bic == Approx(number(known, "bic_minus_first")).epsilon(1e-10).margin(1e-12));
+        CHECK(report.criteria.aic - base.criteria.aic ==
+              Approx(number(known, "aic_minus_first")).epsilon(1e-10).margin(1e-12));
+        CHECK(report.criteria.bic - base.criteria.bic ==
+              Approx(number(known, "bic_minus_first")).epsilon(1e-10).margin(1e-12));
         CHECK(report.fitted.r2 == Approx(number(known, "r2")).epsilon(1e-12));
         CHECK(report.fitted.adjusted_r2 == Approx(number(known, "adjusted_r2")).epsilon(1e-12));
         CHECK(report.fitted.f == Approx(number(known, "f")).epsilon(1e-10));
@@ -33,13 +37,16 @@ TEST_CASE("differences of AIC and BIC, R2 and F are R's on open data", "[verdict
     }
     // R's help page of step() prints 190.69 and 189.86.
     const Judged& swiss = contests.at("swiss");
-    CHECK(theory(swiss, "all").criteria.aic - theory(swiss, "four").criteria.aic == Approx(190.691346319309 - 189.860621942743).epsilon(1e-11));
+    CHECK(theory(swiss, "all").criteria.aic - theory(swiss, "four").criteria.aic ==
+          Approx(190.691346319309 - 189.860621942743).epsilon(1e-11));
 }
 
-// Hald's cement (Woods, Steinour & Starke 1932; Hald 1952): published Cp 2.7, 5.5, 3.0, 3.0, 138.7 (Draper & Smith, from memory); digits from R.
+// Hald's cement (Woods, Steinour & Starke 1932; Hald 1952): published Cp 2.7, 5.5, 3.0, 3.0, 138.7 (Draper & Smith,
+// from memory); digits from R.
 TEST_CASE("GM equals Mallows' Cp + n + p(ln n - 2) on Hald's cement", "[verdict]") {
     std::string study = "study: cement\ndata: {file: hald.csv}\nconstructs:\n";
-    for (const char* name : {"x1", "x2", "x3", "x4", "y"}) study += fmt::format("  {}: {{indicators: [{}]}}\n", name, name);
+    for (const char* name : {"x1", "x2", "x3", "x4", "y"})
+        study += fmt::format("  {}: {{indicators: [{}]}}\n", name, name);
     study += "target: y\ntrial: {folds: 13}\ntheories:\n";
     const auto table = frozen_table("reference/outside/hald_cp.csv");
     for (const auto& known : table) {
@@ -50,7 +57,9 @@ TEST_CASE("GM equals Mallows' Cp + n + p(ln n - 2) on Hald's cement", "[verdict]
     const Judged judged = run_and_judge(study, file_text("reference/outside/hald.csv"));
     const double total = [&] {
         double sum = 0;
-        for (Eigen::Index i = 0; i < 13; ++i) sum += std::pow(judged.contest.sample->values(i, judged.trial.theories[0]->blueprint().target_columns()[0]), 2);
+        for (Eigen::Index i = 0; i < 13; ++i)
+            sum += std::pow(judged.contest.sample->values(i, judged.trial.theories[0]->blueprint().target_columns()[0]),
+                            2);
         return sum / 12;
     }();
     for (const auto& known : table) {
@@ -78,7 +87,8 @@ TEST_CASE("criteria are their published formulas", "[verdict]") {
 
 TEST_CASE("a criterion that does not exist has no number but a reason", "[verdict]") {
     const Criteria exact = criteria_of(0, 50, 4, 0.4);
-    for (const double value : {exact.aic, exact.aicc, exact.bic, exact.hq, exact.gm, exact.bic_weight}) CHECK(std::isnan(value));
+    for (const double value : {exact.aic, exact.aicc, exact.bic, exact.hq, exact.gm, exact.bic_weight})
+        CHECK(std::isnan(value));
     CHECK(exact.reason == "the equation fits every row exactly, so ln(SSE) does not exist");
     const Criteria few = criteria_of(20, 5, 4, 0.4);
     CHECK(std::isnan(few.aicc));
@@ -97,13 +107,15 @@ TEST_CASE("BIC weights add up to 1, follow the differences, and leave out theori
     theories[2].criteria.bic = std::numeric_limits<double>::quiet_NaN();
     theories[3].criteria.bic = 100000;
     weigh_by_bic(theories);
-    CHECK(theories[0].criteria.bic_weight + theories[1].criteria.bic_weight + theories[3].criteria.bic_weight == Approx(1).epsilon(1e-15));
+    CHECK(theories[0].criteria.bic_weight + theories[1].criteria.bic_weight + theories[3].criteria.bic_weight ==
+          Approx(1).epsilon(1e-15));
     CHECK(theories[0].criteria.bic_weight / theories[1].criteria.bic_weight == Approx(std::exp(1.0)).epsilon(1e-14));
     CHECK(theories[3].criteria.bic_weight == 0);
     CHECK(std::isnan(theories[2].criteria.bic_weight));
 }
 
-// Cohen 1988: f2 of a term; for a single column it is t^2 over the residual degrees of freedom (an identity of least squares).
+// Cohen 1988: f2 of a term; for a single column it is t^2 over the residual degrees of freedom (an identity of least
+// squares).
 TEST_CASE("coefficients have the standard errors, t, p and f2 of ordinary least squares", "[verdict]") {
     const Judged judged = run_reference("reference/open_data/attitude");
     const TheoryReport& all = theory(judged, "all");
@@ -123,8 +135,9 @@ TEST_CASE("coefficients have the standard errors, t, p and f2 of ordinary least 
     }
     // R: summary(lm(rating ~ ., attitude)).
     const std::map<std::string, std::pair<double, double>> known = {
-        {"complaints", {3.8090181584, 0.000902867884}}, {"privileges", {-0.5382229496, 0.595593920508}}, {"learning", {1.9008515951, 0.069925345949}},
-        {"raises", {0.3690310215, 0.715480088439}},     {"critical", {0.2611063766, 0.796334264210}},    {"advance", {-1.2179862287, 0.235577048629}}};
+        {"complaints", {3.8090181584, 0.000902867884}}, {"privileges", {-0.5382229496, 0.595593920508}},
+        {"learning", {1.9008515951, 0.069925345949}},   {"raises", {0.3690310215, 0.715480088439}},
+        {"critical", {0.2611063766, 0.796334264210}},   {"advance", {-1.2179862287, 0.235577048629}}};
     for (std::size_t k = 1; k < 7; ++k) {
         CHECK(equation.terms[k].t == Approx(known.at(equation.terms[k].term).first).epsilon(1e-9));
         CHECK(equation.terms[k].p == Approx(known.at(equation.terms[k].term).second).epsilon(1e-8));
@@ -144,7 +157,10 @@ target: delivery
 trial: {folds: 5, repeats: 2}
 theories:
 )";
-    const Judged judged = run_and_judge(head + "  - {name: both, equations: {delivery: [planning, again]}}\n  - {name: one, equations: {delivery: [planning]}}\n", answers.csv());
+    const Judged judged = run_and_judge(head +
+                                            "  - {name: both, equations: {delivery: [planning, again]}}\n  - {name: "
+                                            "one, equations: {delivery: [planning]}}\n",
+                                        answers.csv());
     const TheoryReport& both = theory(judged, "both");
     const TheoryReport& one = theory(judged, "one");
     CHECK(both.fitted.r2 == Approx(one.fitted.r2).epsilon(1e-12));
@@ -180,7 +196,8 @@ theories:
 trial: {folds: 5, repeats: 2}
 )",
                                          data);
-    CHECK(cronbach_alpha(*contest.sample, contest.survey.measurement(0, "everything")->variables) == Approx(.84314276956476).epsilon(1e-13));
+    CHECK(cronbach_alpha(*contest.sample, contest.survey.measurement(0, "everything")->variables) ==
+          Approx(.84314276956476).epsilon(1e-13));
     CHECK(std::isnan(cronbach_alpha(*contest.sample, contest.survey.measurement(0, "department")->variables)));
 }
 

@@ -30,8 +30,10 @@ inline Judged run_and_judge(const std::string& study, const std::string& data, c
 }
 
 /// A study of tests/reference on its own data and splits.
-inline Judged run_reference(const std::string& folder, const std::string& study = "study.yaml", const std::string& data = "data.csv") {
-    return run_and_judge(file_text(folder + "/" + study), file_text(folder + "/" + data), std::string(RIVALFOLD_TESTS) + "/" + folder + "/" + study);
+inline Judged run_reference(const std::string& folder, const std::string& study = "study.yaml",
+                            const std::string& data = "data.csv") {
+    return run_and_judge(file_text(folder + "/" + study), file_text(folder + "/" + data),
+                         std::string(RIVALFOLD_TESTS) + "/" + folder + "/" + study);
 }
 
 /// The lines of a frozen table as texts by column name.
@@ -46,6 +48,8 @@ inline std::vector<std::map<std::string, std::string>> frozen_table(const std::s
     return table;
 }
 
-inline double number(const std::map<std::string, std::string>& line, const std::string& column) { return std::stod(line.at(column)); }
+inline double number(const std::map<std::string, std::string>& line, const std::string& column) {
+    return std::stod(line.at(column));
+}
 
 }  // namespace rivalfold

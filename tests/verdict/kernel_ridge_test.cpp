@@ -1,6 +1,6 @@
+#include "verdict/kernel_ridge.hpp"
 #include "support/catch.hpp"
 #include "support/small_contest.hpp"
-#include "verdict/kernel_ridge.hpp"
 
 #include <Eigen/Eigenvalues>
 
@@ -44,8 +44,10 @@ MatrixXd linnerud(const std::vector<std::string>& names) {
     const auto cells = frozen_cells("reference/outside/linnerud.csv");
     MatrixXd out(static_cast<Index>(cells.size()) - 1, static_cast<Index>(names.size()));
     for (std::size_t j = 0; j < names.size(); ++j) {
-        const auto at = static_cast<std::size_t>(std::find(cells[0].begin(), cells[0].end(), names[j]) - cells[0].begin());
-        for (std::size_t i = 1; i < cells.size(); ++i) out(static_cast<Index>(i) - 1, static_cast<Index>(j)) = std::stod(cells[i].at(at));
+        const auto at =
+            static_cast<std::size_t>(std::find(cells[0].begin(), cells[0].end(), names[j]) - cells[0].begin());
+        for (std::size_t i = 1; i < cells.size(); ++i)
+            out(static_cast<Index>(i) - 1, static_cast<Index>(j)) = std::stod(cells[i].at(at));
     }
     return out;
 }
@@ -66,9 +68,11 @@ TEST_CASE("predictions and leave-one-out residuals are those of scikit-learn", "
         const double length = std::stod(cells[line][0]), penalty = std::stod(cells[line][1]);
         const MatrixXd kernel = gaussian_kernel(train, train, length);
         MatrixXd mine(20, 3), frozen(20, 3);
-        mine << fit_kernel_ridge(kernel, y, penalty).predict(gaussian_kernel(z.bottomRows(5), train, length)), LeaveOneOut(kernel, y).residuals(penalty);
+        mine << fit_kernel_ridge(kernel, y, penalty).predict(gaussian_kernel(z.bottomRows(5), train, length)),
+            LeaveOneOut(kernel, y).residuals(penalty);
         for (Index i = 0; i < 20; ++i)
-            for (Index j = 0; j < 3; ++j) frozen(i, j) = std::stod(cells[line + static_cast<std::size_t>(i)][4 + static_cast<std::size_t>(j)]);
+            for (Index j = 0; j < 3; ++j)
+                frozen(i, j) = std::stod(cells[line + static_cast<std::size_t>(i)][4 + static_cast<std::size_t>(j)]);
         INFO("length " << length << ", penalty " << penalty);
         CHECK(cells[line][2] == "prediction");
         CHECK(cells[line + 5][2] == "left out");
@@ -78,7 +82,7 @@ TEST_CASE("predictions and leave-one-out residuals are those of scikit-learn", "
 
 TEST_CASE("leave-one-out residuals are those of refits without each row", "[verdict]") {
     MatrixXd x = random_matrix(40, 4, 1);
-    x.row(17) = x.row(3);  // equal rows
+    x.row(17) = x.row(3);       // equal rows
     x.row(39).setConstant(50);  // a row far from all others
     const MatrixXd y = 1e3 + random_matrix(40, 2, 2).array();
     for (const double length : {0.3, 2.0, 30.0}) {
@@ -99,7 +103,8 @@ TEST_CASE("leave-one-out residuals are those of an eigendecomposition", "[verdic
     const LeaveOneOut left_out(kernel, y);
     for (const double penalty : {1e-3, 1.0, 100.0}) {
         const VectorXd kept = eigen.eigenvalues().array() / (eigen.eigenvalues().array() + penalty);
-        const MatrixXd hat = (eigen.eigenvectors() * kept.asDiagonal() * eigen.eigenvectors().transpose()).array() + 1.0 / 60;
+        const MatrixXd hat =
+            (eigen.eigenvectors() * kept.asDiagonal() * eigen.eigenvectors().transpose()).array() + 1.0 / 60;
         MatrixXd expected = y - hat * y;
         expected.array().colwise() /= 1 - hat.diagonal().array();
         CHECK(largest(left_out.residuals(penalty) - expected) < 1e-10);
@@ -122,7 +127,8 @@ TEST_CASE("a huge penalty predicts the mean, a tiny one the training outcomes", 
     CHECK(largest(far.rowwise() - y.colwise().mean()) < 1e-9);
     CHECK(largest(fit_kernel_ridge(kernel, y, 1e-10).predict(kernel) - y) < 1e-3);
     // The intercept bears no penalty: moving the outcomes moves the predictions alike.
-    const MatrixXd here = fit_kernel_ridge(kernel, y, 3).predict(cross), there = fit_kernel_ridge(kernel, y.array() + 1e4, 3).predict(cross);
+    const MatrixXd here = fit_kernel_ridge(kernel, y, 3).predict(cross),
+                   there = fit_kernel_ridge(kernel, y.array() + 1e4, 3).predict(cross);
     CHECK(largest((there - here).array() - 1e4) < 1e-9);
     CHECK(largest(fit_kernel_ridge(kernel, y, 3).dual.colwise().sum()) < 1e-12);
 }

@@ -40,7 +40,8 @@ TEST_CASE("the row test is the paired t test, with its interval", "[verdict]") {
     const VectorXd cx = x.array() - x.mean(), cy = y.array() - y.mean();
     const VectorXd rest = cy - cx * (cx.dot(cy) / cx.squaredNorm());
     const auto known = frozen_table("reference/outside/paired_t_scipy.csv");
-    const PairedTest squared = row_test(cy.cwiseAbs2() - rest.cwiseAbs2(), 0.05), absolute = row_test(cy.cwiseAbs() - rest.cwiseAbs(), 0.05);
+    const PairedTest squared = row_test(cy.cwiseAbs2() - rest.cwiseAbs2(), 0.05),
+                     absolute = row_test(cy.cwiseAbs() - rest.cwiseAbs(), 0.05);
     for (const auto& [test_of, line] : {std::pair{&squared, known[1]}, std::pair{&absolute, known[2]}}) {
         CHECK(test_of->t == Approx(number(line, "t")).epsilon(1e-11));
         CHECK(test_of->se == Approx(number(line, "se")).epsilon(1e-11));
@@ -48,8 +49,9 @@ TEST_CASE("the row test is the paired t test, with its interval", "[verdict]") {
     }
 }
 
-// scikit-learn, example "Statistical comparison of models using grid search" (printed .750 and 2.611: from memory); the digits by exact arithmetic
-// (tests/reference/outside/corrected_t.py). Bouckaert & Frank 2004: for 10 x 10 folds corrected / uncorrected = sqrt(.01 / (.01 + 1/9)).
+// scikit-learn, example "Statistical comparison of models using grid search" (printed .750 and 2.611: from memory); the
+// digits by exact arithmetic (tests/reference/outside/corrected_t.py). Bouckaert & Frank 2004: for 10 x 10 folds
+// corrected / uncorrected = sqrt(.01 / (.01 + 1/9)).
 TEST_CASE("the corrected repeated k-fold test is the published one", "[verdict]") {
     const auto table = frozen_table("reference/open_data/corrected_t/fold_scores.csv");
     const VectorXd s = column(table, "model_1") - column(table, "model_2");
@@ -67,15 +69,20 @@ TEST_CASE("the corrected repeated k-fold test is the published one", "[verdict]"
     CHECK(moved.t == corrected.t);
     CHECK((moved.low + moved.high) / 2 == Approx(0.5).epsilon(1e-14));
     CHECK(moved.high - moved.low == Approx(corrected.high - corrected.low).epsilon(1e-12));
-    CHECK(corrected.high - corrected.low == Approx(2 * 1.9842169515864172 * corrected.se).epsilon(1e-12));  // R qt(.975, 99)
+    CHECK(corrected.high - corrected.low ==
+          Approx(2 * 1.9842169515864172 * corrected.se).epsilon(1e-12));  // R qt(.975, 99)
 }
 
 // statsmodels cov_type="cluster" (Liang & Zeger 1986), tests/reference/outside/cluster_se.py.
 TEST_CASE("the row test by cluster has statsmodels' cluster-robust standard error", "[verdict]") {
-    const Table answers = read_delimited(std::string(RIVALFOLD_TESTS) + "/reference/studies/answers.csv", {}, [](const std::vector<std::string>& header) {
-        const auto at = [&](const char* name) { return static_cast<std::size_t>(std::find(header.begin(), header.end(), name) - header.begin()); };
-        return ColumnChoice{{at("hours")}, {at("crew"), at("phase")}};
-    });
+    const Table answers = read_delimited(
+        std::string(RIVALFOLD_TESTS) + "/reference/studies/answers.csv", {},
+        [](const std::vector<std::string>& header) {
+            const auto at = [&](const char* name) {
+                return static_cast<std::size_t>(std::find(header.begin(), header.end(), name) - header.begin());
+            };
+            return ColumnChoice{{at("hours")}, {at("crew"), at("phase")}};
+        });
     for (const auto& known : frozen_table("reference/outside/cluster_se.csv")) {
         std::vector<double> values;
         std::vector<int> cluster;
@@ -112,7 +119,8 @@ TEST_CASE("clusters of one row each give the row test", "[verdict]") {
 TEST_CASE("differences that are all equal give no t and no p, but the reason", "[verdict]") {
     for (const double value : {0.0, 0.1}) {
         const VectorXd d = VectorXd::Constant(9, value);
-        for (const PairedTest& test : {row_test(d, 0.05), cluster_test(d, {0, 0, 0, 1, 1, 1, 2, 2, 2}, 3, 0.05), corrected_test(d, 3, value, 0.05)}) {
+        for (const PairedTest& test : {row_test(d, 0.05), cluster_test(d, {0, 0, 0, 1, 1, 1, 2, 2, 2}, 3, 0.05),
+                                       corrected_test(d, 3, value, 0.05)}) {
             CHECK(std::isnan(test.t));
             CHECK(std::isnan(test.p));
             CHECK(test.reason == kAllEqual);

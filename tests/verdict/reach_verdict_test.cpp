@@ -42,9 +42,12 @@ theories:
   - {name: B, equations: {delivery: [skill]}}
   - {name: C, equations: {delivery: [{minimum: [planning, skill]}]}}
 trial: {folds: 5, repeats: 4}
-)" + verdict, answers.csv());
+)" + verdict,
+                          answers.csv());
         trial = run_trial(contest.study, contest.survey, *contest.sample, contest.plan, 1);
-        for (std::size_t c = 0; c < 5; ++c) set(c, VectorXd::Constant(kRows, c < 3 ? 1 : 3) + differences(kRows, 0, 0.05, 77), VectorXd::Constant(kFolds * kRepeats, c < 3 ? 1 : 3));
+        for (std::size_t c = 0; c < 5; ++c)
+            set(c, VectorXd::Constant(kRows, c < 3 ? 1 : 3) + differences(kRows, 0, 0.05, 77),
+                VectorXd::Constant(kFolds * kRepeats, c < 3 ? 1 : 3));
     }
 
     void set(std::size_t c, const VectorXd& row_loss, const VectorXd& split_loss) {
@@ -58,7 +61,8 @@ trial: {folds: 5, repeats: 4}
         const double n_splits = kFolds * kRepeats;
         const double correction = std::sqrt(n_splits * (1 / n_splits + 1.0 / (kFolds - 1)));
         set(c, trial.contestants[0].row_loss + differences(kRows, mean, mean / t_rows, static_cast<std::uint32_t>(c)),
-            trial.contestants[0].split_loss + differences(kFolds * kRepeats, mean, mean / t_splits / correction, 20 + static_cast<std::uint32_t>(c)));
+            trial.contestants[0].split_loss +
+                differences(kFolds * kRepeats, mean, mean / t_splits / correction, 20 + static_cast<std::uint32_t>(c)));
     }
     Verdict judged() const { return judge(contest, trial); }
 };
@@ -160,9 +164,10 @@ TEST_CASE("the level of the study decides", "[verdict]") {
 }
 
 // Two one-sided tests (Schuirmann 1987): the 1 - 2 level interval within the margin.
-TEST_CASE("theories are practically equal if the 90% interval lies within the margin, before anything else", "[verdict]") {
+TEST_CASE("theories are practically equal if the 90% interval lies within the margin, before anything else",
+          "[verdict]") {
     HandMade made;
-    made.worse(1, 0.008, 4, 4);    // significant, but far below 2%
+    made.worse(1, 0.008, 4, 4);  // significant, but far below 2%
     made.worse(2, 0.001, 0.4, 0.5);
     const Verdict verdict = made.judged();
     CHECK(pair(verdict, 0, 1).p < 0.05);
@@ -177,7 +182,8 @@ TEST_CASE("equality is decided at exactly the margin, by the wider of the two in
         HandMade made;
         made.worse(1, 0.01, t_rows, 5);
         const PairReport report = pair(made.judged(), 0, 1);
-        const double reach = std::max(student_quantile(0.05, 59) * report.rows.se, student_quantile(0.05, 19) * report.corrected.se);
+        const double reach =
+            std::max(student_quantile(0.05, 59) * report.rows.se, student_quantile(0.05, 19) * report.corrected.se);
         const double margin = (0.01 + reach) / made.trial.contestants[0].loss;
         made.contest.study.verdict.margin = margin * (1 + 1e-9);
         CHECK(pair(made.judged(), 0, 1).outcome == PairOutcome::practically_equal);
@@ -233,7 +239,9 @@ target: delivery
 trial: {folds: 5, repeats: 2}
 theories:
 )";
-    const std::string reason = "weights: mode_b of \"skill\" needs indicators that are no linear combinations of each other; drop one or use mode_a";
+    const std::string reason =
+        "weights: mode_b of \"skill\" needs indicators that are no linear combinations of each other; drop one or use "
+        "mode_a";
     const Judged judged = run_and_judge(head + R"(  - {name: bad, equations: {delivery: [skill]}}
   - {name: good, equations: {delivery: [planning]}}
   - {name: bent, equations: {delivery: [{square: planning}]}}
@@ -247,21 +255,33 @@ theories:
     CHECK(judged.verdict.order.size() == 4);
     for (const PairReport& report : judged.verdict.pairs) CHECK((report.a != 0 && report.b != 0));
     CHECK(judged.verdict.pairs.size() == 6);
-    CHECK(judged.verdict.theories[1].criteria.bic_weight + judged.verdict.theories[2].criteria.bic_weight == Approx(1).epsilon(1e-14));
-    const Judged alone = run_and_judge(head + "  - {name: bad, equations: {delivery: [skill]}}\n  - {name: good, equations: {delivery: [planning]}}\n", answers.csv());
+    CHECK(judged.verdict.theories[1].criteria.bic_weight + judged.verdict.theories[2].criteria.bic_weight ==
+          Approx(1).epsilon(1e-14));
+    const Judged alone = run_and_judge(
+        head + "  - {name: bad, equations: {delivery: [skill]}}\n  - {name: good, equations: {delivery: [planning]}}\n",
+        answers.csv());
     CHECK(alone.verdict.headline == "Only \"good\" could be fitted in every split, so it has no rival.");
     CHECK_FALSE(alone.verdict.winner);
-    const Judged none = run_and_judge(head + "  - {name: bad, equations: {delivery: [skill]}}\n  - {name: worse, equations: {delivery: [skill, planning]}}\n", answers.csv());
+    const Judged none = run_and_judge(head +
+                                          "  - {name: bad, equations: {delivery: [skill]}}\n  - {name: worse, "
+                                          "equations: {delivery: [skill, planning]}}\n",
+                                      answers.csv());
     CHECK(none.verdict.headline == "No theory could be fitted in every split, so there is nothing to compare.");
     CHECK(none.verdict.order.size() == 2);
 }
 
-TEST_CASE("theories that weight the target's indicators differently are marked as having several targets", "[verdict]") {
+TEST_CASE("theories that weight the target's indicators differently are marked as having several targets",
+          "[verdict]") {
     const auto several = [](const std::string& weights) {
-        return run_and_judge("study: refits\ndata: {file: refits.csv}\nconstructs:\n  planning: {indicators: [\"pln*\"]}\n  skill: {indicators: [\"skl*\"]}\n"
-                             "  delivery: {indicators: [\"dlv*\"], weights: " + weights + "}\ntarget: delivery\ntrial: {folds: 5, repeats: 2}\ntheories:\n"
-                             "  - {name: one, equations: {delivery: [planning]}}\n  - {name: two, equations: {delivery: [skill]}}\n",
-                             invented_answers(50).csv())
+        return run_and_judge(
+                   "study: refits\ndata: {file: refits.csv}\nconstructs:\n  planning: {indicators: [\"pln*\"]}\n  "
+                   "skill: {indicators: [\"skl*\"]}\n"
+                   "  delivery: {indicators: [\"dlv*\"], weights: " +
+                       weights +
+                       "}\ntarget: delivery\ntrial: {folds: 5, repeats: 2}\ntheories:\n"
+                       "  - {name: one, equations: {delivery: [planning]}}\n  - {name: two, equations: {delivery: "
+                       "[skill]}}\n",
+                   invented_answers(50).csv())
             .verdict.several_targets;
     };
     CHECK(several("mode_a"));

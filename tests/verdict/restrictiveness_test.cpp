@@ -27,10 +27,12 @@ struct Fitted {
 
 Fitted fit_all(const Answers& answers, const std::string& theories, const std::string& more = "") {
     Fitted out;
-    out.contest = prepare("study: refits\ndata: {file: refits.csv}\nconstructs:\n  planning: {indicators: [\"pln*\"], weights: equal}\n"
-                          "  skill: {indicators: [\"skl*\"], weights: equal}\n  supply: {indicators: [\"sup*\"], weights: equal}\n"
-                          "  delivery: {indicators: [\"dlv*\"]}\ntarget: delivery\n" + more + "theories:\n" + theories + "trial: {folds: 5, repeats: 1}\n",
-                          answers.csv());
+    out.contest = prepare(
+        "study: refits\ndata: {file: refits.csv}\nconstructs:\n  planning: {indicators: [\"pln*\"], weights: equal}\n"
+        "  skill: {indicators: [\"skl*\"], weights: equal}\n  supply: {indicators: [\"sup*\"], weights: equal}\n"
+        "  delivery: {indicators: [\"dlv*\"]}\ntarget: delivery\n" +
+            more + "theories:\n" + theories + "trial: {folds: 5, repeats: 1}\n",
+        answers.csv());
     out.trial = fit_all_rows(out.contest.study, out.contest.survey, *out.contest.sample, 1);
     return out;
 }
@@ -66,11 +68,13 @@ TEST_CASE("a theory with more free terms is less restrictive", "[verdict]") {
     }
 }
 
-TEST_CASE("restrictiveness agrees with other draws, made from the kernel's eigenvectors, and plain projections", "[verdict]") {
+TEST_CASE("restrictiveness agrees with other draws, made from the kernel's eigenvectors, and plain projections",
+          "[verdict]") {
     const Answers answers = invented_answers(150);
     const RestrictivenessReport report = restrictiveness(fit_all(answers, kTheories));
     MatrixXd x(150, 3);
-    x << score(answers, {"pln1", "pln2", "pln3"}), score(answers, {"skl1", "skl2", "skl3"}), score(answers, {"sup1", "sup2"});
+    x << score(answers, {"pln1", "pln2", "pln3"}), score(answers, {"skl1", "skl2", "skl3"}),
+        score(answers, {"sup1", "sup2"});
     const Eigen::SelfAdjointEigenSolver<MatrixXd> eigen(gaussian_kernel(x, x, median_distance(x)));
     MatrixXd draws(150, 1000);
     RandomStream stream(2, Purpose::simulation, 1);
@@ -79,11 +83,13 @@ TEST_CASE("restrictiveness agrees with other draws, made from the kernel's eigen
     draws = draws.rowwise() - draws.colwise().mean();
     const auto expected = [&](const MatrixXd& columns) {
         const MatrixXd centred = columns.rowwise() - columns.colwise().mean();
-        const MatrixXd left = draws - centred * (centred.transpose() * centred).ldlt().solve(centred.transpose() * draws);
+        const MatrixXd left =
+            draws - centred * (centred.transpose() * centred).ldlt().solve(centred.transpose() * draws);
         return (left.colwise().squaredNorm().array() / draws.colwise().squaredNorm().array()).mean();
     };
     MatrixXd crossed(150, 7);
-    crossed << x, x.col(0).cwiseProduct(x.col(1)), x.col(0).cwiseProduct(x.col(2)), x.col(1).cwiseProduct(x.col(2)), x.rowwise().prod();
+    crossed << x, x.col(0).cwiseProduct(x.col(1)), x.col(0).cwiseProduct(x.col(2)), x.col(1).cwiseProduct(x.col(2)),
+        x.rowwise().prod();
     const double theirs[] = {expected(x), expected(crossed), expected(x.col(0)), expected(x.rowwise().minCoeff())};
     for (std::size_t t = 0; t < 4; ++t) {
         INFO(t << ": " << report.theories[t].value << ", other draws " << theirs[t]);
@@ -100,13 +106,17 @@ TEST_CASE("a theory with as many terms as rows could fit anything", "[verdict]")
 TEST_CASE("the outcome plays no part in restrictiveness", "[verdict]") {
     Answers answers = invented_answers(100);
     const RestrictivenessReport before = restrictiveness(fit_all(answers, kTheories));
-    answers.values.rightCols(3) = answers.values.rightCols(3).rowwise().reverse().array().square() + 3 * answers.values.col(0).replicate(1, 3).array();
+    answers.values.rightCols(3) = answers.values.rightCols(3).rowwise().reverse().array().square() +
+                                  3 * answers.values.col(0).replicate(1, 3).array();
     const RestrictivenessReport after = restrictiveness(fit_all(answers, kTheories));
-    for (std::size_t t = 0; t < 4; ++t) CHECK(after.theories[t].value == Approx(before.theories[t].value).epsilon(1e-9));
+    for (std::size_t t = 0; t < 4; ++t)
+        CHECK(after.theories[t].value == Approx(before.theories[t].value).epsilon(1e-9));
 }
 
 TEST_CASE("controls are fitted with each theory, and are no antecedents of the random outcomes", "[verdict]") {
-    const std::string theories = "  - {name: first, equations: {delivery: [planning]}}\n  - {name: second, equations: {delivery: [{square: planning}, planning]}}\n";
+    const std::string theories =
+        "  - {name: first, equations: {delivery: [planning]}}\n  - {name: second, equations: {delivery: [{square: "
+        "planning}, planning]}}\n";
     const Answers answers = invented_answers(100);
     const RestrictivenessReport plain = restrictiveness(fit_all(answers, theories));
     const RestrictivenessReport controlled = restrictiveness(fit_all(answers, theories, "controls: [skill]\n"));

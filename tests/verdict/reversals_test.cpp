@@ -8,7 +8,8 @@ using namespace rivalfold;
 
 namespace {
 
-/// One segment's comparison of two theories: D = loss(a) - loss(b), and each test's standard error with its degrees of freedom.
+/// One segment's comparison of two theories: D = loss(a) - loss(b), and each test's standard error with its degrees of
+/// freedom.
 struct Side {
     double difference, rows_se, rows_df, corrected_se, corrected_df;
 };
@@ -39,7 +40,8 @@ trial: {folds: 5, repeats: 2}
 theories:
   - {name: A, equations: {delivery: [planning]}}
   - {name: B, equations: {delivery: [skill]}}
-)") + (three ? "  - {name: C, equations: {delivery: [planning, skill]}}\n" : "") + verdict;
+)") + (three ? "  - {name: C, equations: {delivery: [planning, skill]}}\n" : "") +
+                             verdict;
     const std::string data = invented_answers(60).csv();
     const auto finished = [&] {
         Judged judged = run_and_judge(text, data);
@@ -90,7 +92,8 @@ TEST_CASE("a reversal is Welch's test of the difference of two differences", "[r
     }
 }
 
-TEST_CASE("each segment brings the larger of its two standard errors, with that test's degrees of freedom", "[reversals]") {
+TEST_CASE("each segment brings the larger of its two standard errors, with that test's degrees of freedom",
+          "[reversals]") {
     const Reversal found = reversal_of({1.0, 0.3, 50, 0.4, 20}, {0.2, 0.5, 30, 0.1, 15});
     CHECK(found.se == Approx(std::sqrt(0.4 * 0.4 + 0.5 * 0.5)).epsilon(1e-14));
     CHECK(found.df == Approx(0.41 * 0.41 / (0.0256 / 20 + 0.0625 / 30)).epsilon(1e-12));
@@ -123,7 +126,8 @@ TEST_CASE("Holm runs over every pair of theories and of segments at once", "[rev
     Outcome whole = outcome_of(3, true);
     for (std::size_t s = 0; s < 3; ++s) {
         const auto shift = static_cast<double>(s);
-        whole.segments[s].verdict.pairs = {report_of(0, 1, {0.1 * shift, 0.05, 30, 0.04, 9}), report_of(0, 2, {0.03 * shift * shift, 0.05, 30, 0.04, 9}),
+        whole.segments[s].verdict.pairs = {report_of(0, 1, {0.1 * shift, 0.05, 30, 0.04, 9}),
+                                           report_of(0, 2, {0.03 * shift * shift, 0.05, 30, 0.04, 9}),
                                            report_of(1, 2, {-0.2 + 0.01 * shift, 0.05, 30, 0.04, 9})};
     }
     const std::vector<Reversal> found = find_reversals(whole);

@@ -30,11 +30,11 @@ struct Category {
 /// How one construct is measured, with every name resolved.
 struct Measurement {
     std::string construct;
-    std::size_t theory = 0;         ///< kEveryTheory, or the theory whose own measurement this is
-    std::vector<int> variables;     ///< indices into Survey::variables; empty for a category
-    int category = -1;              ///< index into Survey::categories, or -1
+    std::size_t theory = 0;      ///< kEveryTheory, or the theory whose own measurement this is
+    std::vector<int> variables;  ///< indices into Survey::variables; empty for a category
+    int category = -1;           ///< index into Survey::categories, or -1
     Weights weights = Weights::mode_a;
-    bool used = false;              ///< some equation or control of a theory meets it
+    bool used = false;  ///< some equation or control of a theory meets it
     static constexpr std::size_t kEveryTheory = static_cast<std::size_t>(-1);
 };
 
@@ -53,12 +53,13 @@ struct Survey {
     bool has_missing = false;          ///< some value is NaN
     std::vector<Category> categories;  ///< those of used measurements only
     std::vector<Measurement> measurements;
-    std::vector<int> clusters;         ///< per used row, 0 .. n_clusters - 1; empty without `cluster`
+    std::vector<int> clusters;  ///< per used row, 0 .. n_clusters - 1; empty without `cluster`
     std::vector<std::string> cluster_names;
-    std::vector<int> segments;         ///< per used row, an index into segment_names; empty without `segment`
-    std::vector<std::string> segment_names;  ///< `kind: simple`, or with cuts `complexity <= 4`, `4 < complexity <= 6`, `complexity > 6`
-    std::vector<std::string> advice;   ///< e.g. a construct that no theory uses
-    std::string sha256;                ///< of the data file, lower-case hexadecimal
+    std::vector<int> segments;  ///< per used row, an index into segment_names; empty without `segment`
+    std::vector<std::string>
+        segment_names;  ///< `kind: simple`, or with cuts `complexity <= 4`, `4 < complexity <= 6`, `complexity > 6`
+    std::vector<std::string> advice;  ///< e.g. a construct that no theory uses
+    std::string sha256;               ///< of the data file, lower-case hexadecimal
 
     std::size_t n() const { return rows.size(); }
     /// The measurement of `construct` in theory number `theory`; null if unknown.
@@ -66,16 +67,17 @@ struct Survey {
 };
 
 /// Reads the study's data file and keeps what the study uses. Throws FaultError: unreadable file, unknown columns (at
-/// their place in the study, with the nearest name), values outside `range`, no rows left (with the count lost per column).
-/// Under rows: mean a row still leaves when a target indicator, a category or the cluster is missing: an outcome that was
-/// never observed cannot be predicted or judged.
+/// their place in the study, with the nearest name), values outside `range`, no rows left (with the count lost per
+/// column). Under rows: mean a row still leaves when a target indicator, a category or the cluster is missing: an
+/// outcome that was never observed cannot be predicted or judged.
 Survey read_survey(const Study& study);
 
 /// The same from a table in memory, for library users; the table must hold the columns that survey_columns() names.
 Survey build_survey(const Study& study, const Table& table);
 
-/// The rows of one segment as a survey of its own: clusters renumbered, levels that do not occur removed, rows_read as in the whole.
-/// Throws FaultError naming the segment and the column where a used indicator does not vary within it or a category has one level.
+/// The rows of one segment as a survey of its own: clusters renumbered, levels that do not occur removed, rows_read as
+/// in the whole. Throws FaultError naming the segment and the column where a used indicator does not vary within it or
+/// a category has one level.
 Survey survey_of_segment(const Study& study, const Survey& whole, std::size_t segment);
 
 /// Which columns of a file with this header the study needs. Throws FaultError for names that match nothing.

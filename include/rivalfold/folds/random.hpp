@@ -21,7 +21,8 @@ public:
     RandomStream(std::uint64_t seed, Purpose purpose, std::uint32_t index);
     std::uint32_t next32();
     std::uint64_t next64();  ///< two 32-bit words, the first one low
-    /// Uniform on 0 .. bound - 1 without bias, by multiplication and rejection (Lemire 2019, ACM TOMACS 29(1)). bound >= 1.
+    /// Uniform on 0 .. bound - 1 without bias, by multiplication and rejection (Lemire 2019, ACM TOMACS 29(1)). bound
+    /// >= 1.
     std::uint64_t below(std::uint64_t bound);
     /// The same from 32-bit words, for bounds below 2^32: half the work, other numbers.
     std::uint32_t below_small(std::uint32_t bound);

@@ -77,12 +77,13 @@ struct Condition {
 /// `segment: column` or `{column: complexity, cuts: [4]}`: the contest is repeated within each segment.
 struct Segmenting {
     Name column;
-    std::vector<double> cuts;  ///< ascending; values <= the first cut are the first segment; empty: one segment per value
+    std::vector<double>
+        cuts;  ///< ascending; values <= the first cut are the first segment; empty: one segment per value
 };
 
 struct DataSource {
-    Name file;         ///< as written
-    std::string path;  ///< resolved against the study file's folder
+    Name file;           ///< as written
+    std::string path;    ///< resolved against the study file's folder
     char delimiter = 0;  ///< 0: find it
     std::vector<std::string> missing_codes;
     RowRule rows = RowRule::drop;
@@ -94,7 +95,7 @@ struct DataSource {
 struct TrialPlan {
     int folds = 10;
     Place folds_place;
-    int repeats = 50;          ///< under auto_repeats the smallest number that is run
+    int repeats = 50;           ///< under auto_repeats the smallest number that is run
     bool auto_repeats = false;  ///< repeats: auto
     std::uint64_t seed = 1;
     std::optional<Name> folds_file;
@@ -125,7 +126,8 @@ struct Study {
 
     /// A fault at a place of this study file, with the line's text.
     Fault fault_at(Place place, std::string message, std::string hint = {}) const;
-    /// The construct as theory number `theory` measures it (its own declaration first, then the study's); null if unknown.
+    /// The construct as theory number `theory` measures it (its own declaration first, then the study's); null if
+    /// unknown.
     const Construct* construct(std::size_t theory, std::string_view name) const;
     /// The construct of the study itself; null if unknown.
     const Construct* construct(std::string_view name) const;

@@ -1,5 +1,5 @@
-// One theory with every name resolved to columns of the sample: what to weight, which terms to form, what to regress on what.
-// Knows no rows, no folds and no files.
+// One theory with every name resolved to columns of the sample: what to weight, which terms to form, what to regress on
+// what. Knows no rows, no folds and no files.
 #pragma once
 
 #include "rivalfold/data/survey.hpp"
@@ -17,8 +17,8 @@ struct Block {
     std::string construct;     ///< construct
     std::vector<int> columns;  ///< sample columns of its indicators, in declared order; one for a level
     Weights weights = Weights::mode_a;
-    int category = -1;         ///< index into Sample::categories, or -1
-    std::string measurement;   ///< equal for two blocks exactly if they are measured alike
+    int category = -1;        ///< index into Sample::categories, or -1
+    std::string measurement;  ///< equal for two blocks exactly if they are measured alike
 
     bool is_level() const { return category >= 0; }
     bool iterates() const { return columns.size() > 1 && (weights == Weights::mode_a || weights == Weights::mode_b); }
@@ -36,7 +36,7 @@ struct DesignColumn {
 
 struct EquationPlan {
     std::string outcome_name;
-    int outcome = 0;                ///< block
+    int outcome = 0;  ///< block
     std::vector<DesignColumn> columns;
     std::vector<int> predecessors;  ///< distinct blocks among the columns' members
     bool linear = true;             ///< every column is a plain score
@@ -47,8 +47,8 @@ struct Blueprint {
     std::string name;
     std::string claim;
     std::vector<Block> blocks;
-    std::vector<EquationPlan> equations;   ///< antecedents first
-    std::vector<int> file_order;           ///< equations in the order of the study file
+    std::vector<EquationPlan> equations;  ///< antecedents first
+    std::vector<int> file_order;          ///< equations in the order of the study file
     int target_equation = 0;
     Metric metric = Metric::standard;
     Mediators mediators = Mediators::measured;
@@ -64,8 +64,8 @@ struct Blueprint {
 /// FaultError for a term of categories that makes more than 500 columns.
 std::vector<Blueprint> build_blueprints(const Study& study, const Survey& survey, const Sample& sample);
 
-/// Sample columns that predict in the linear benchmark: every indicator and level that any theory or control uses, in order of
-/// first use, each data column once, without the target's own data columns.
+/// Sample columns that predict in the linear benchmark: every indicator and level that any theory or control uses, in
+/// order of first use, each data column once, without the target's own data columns.
 std::vector<int> benchmark_columns(const std::vector<Blueprint>& blueprints, const Survey& survey);
 
 }  // namespace rivalfold

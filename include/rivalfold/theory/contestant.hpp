@@ -44,12 +44,13 @@ public:
     /// Everything that the training moments determine. A failure is a value: fit.status and fit.reason.
     virtual void fit_moments(const Moments& moments, FitScratch& scratch, Fit& fit) const = 0;
 
-    /// Designs with bent terms, whose cross-products need the training rows: how many there are, and their columns (the equation's
-    /// design columns, then the outcome's score).
+    /// Designs with bent terms, whose cross-products need the training rows: how many there are, and their columns (the
+    /// equation's design columns, then the outcome's score).
     virtual int n_designs() const { return 0; }
     virtual int design_columns(int /*design*/) const { return 0; }
     /// Writes the design's columns for some rows, each minus a fixed shift, `stride` apart.
-    virtual void form_design(int /*design*/, const Fit&, const RowBlock&, RowScratch&, double* /*out*/, std::ptrdiff_t /*stride*/) const {}
+    virtual void form_design(int /*design*/, const Fit&, const RowBlock&, RowScratch&, double* /*out*/,
+                             std::ptrdiff_t /*stride*/) const {}
     /// Solves the design's equation from the Gram matrix (lower triangle) of [columns, 1] over the training rows.
     virtual void fit_design(int /*design*/, const Eigen::MatrixXd& /*gram*/, Fit&) const {}
     /// After all designs: what prediction needs.
@@ -59,12 +60,14 @@ public:
     virtual void predict(const Fit&, const RowBlock&, RowScratch&, double* out, std::ptrdiff_t stride) const = 0;
 };
 
-/// A structural theory. `everything` fits also the equations that do not take part in predicting the target (for the in-sample report).
+/// A structural theory. `everything` fits also the equations that do not take part in predicting the target (for the
+/// in-sample report).
 class TheoryContestant final : public Contestant {
 public:
     TheoryContestant(const Sample& sample, Blueprint blueprint, bool everything);
     const Blueprint& blueprint() const { return plan_; }
-    /// Origins near which the designs' columns lie, from a fit to all rows: shifting by them keeps digits in products of raw scores.
+    /// Origins near which the designs' columns lie, from a fit to all rows: shifting by them keeps digits in products
+    /// of raw scores.
     void set_shifts(const Fit& whole);
 
     const std::string& name() const override { return plan_.name; }
@@ -73,7 +76,8 @@ public:
     void fit_moments(const Moments&, FitScratch&, Fit&) const override;
     int n_designs() const override { return static_cast<int>(designs_.size()); }
     int design_columns(int design) const override;
-    void form_design(int design, const Fit&, const RowBlock&, RowScratch&, double* out, std::ptrdiff_t stride) const override;
+    void form_design(int design, const Fit&, const RowBlock&, RowScratch&, double* out,
+                     std::ptrdiff_t stride) const override;
     void fit_design(int design, const Eigen::MatrixXd& gram, Fit&) const override;
     void finish(FitScratch&, Fit&) const override;
     void predict(const Fit&, const RowBlock&, RowScratch&, double* out, std::ptrdiff_t stride) const override;
@@ -89,15 +93,17 @@ private:
     void solve_linear(std::size_t equation, double n, Fit&) const;
     void accept(std::size_t equation, Fit&) const;
     template <class Factor>
-    void add_columns(const RowBlock&, const std::vector<int>& columns, const Eigen::VectorXd& gap_means, Factor factor, double* out) const;
-    void form_equation_column(const DesignColumn&, std::ptrdiff_t rows, const Eigen::MatrixXd& scores, double* out) const;
+    void add_columns(const RowBlock&, const std::vector<int>& columns, const Eigen::VectorXd& gap_means, Factor factor,
+                     double* out) const;
+    void form_equation_column(const DesignColumn&, std::ptrdiff_t rows, const Eigen::MatrixXd& scores,
+                              double* out) const;
 
     const Sample& sample_;
     Blueprint plan_;
-    std::vector<int> designs_;              // equations with bent terms that are needed
-    std::vector<Eigen::VectorXd> shifts_;   // per design: columns, then outcome
-    bool direct_ = true;                    // every needed equation is linear
-    std::vector<int> direct_columns_;       // sample columns that a direct prediction may use
+    std::vector<int> designs_;             // equations with bent terms that are needed
+    std::vector<Eigen::VectorXd> shifts_;  // per design: columns, then outcome
+    bool direct_ = true;                   // every needed equation is linear
+    std::vector<int> direct_columns_;      // sample columns that a direct prediction may use
 };
 
 /// Each indicator's training mean.
@@ -113,7 +119,8 @@ private:
     std::vector<int> target_columns_;
 };
 
-/// Ordinary least squares of each target indicator on every predictor indicator (standardised) and level that any theory or control uses.
+/// Ordinary least squares of each target indicator on every predictor indicator (standardised) and level that any
+/// theory or control uses.
 class LinearBenchmark final : public Contestant {
 public:
     LinearBenchmark(const Sample& sample, std::vector<int> target_columns, std::vector<int> predictor_columns);

@@ -17,33 +17,33 @@ enum class FitStatus { not_run, fitted, failed };
 struct ScoreMap {
     double constant = 0;
     Eigen::VectorXd coefficients;
-    double mean = 0;      ///< training mean of the score in the study's metric
-    double sd = 1;        ///< its training standard deviation
-    bool active = true;   ///< false for the first present level of a category and for levels without training rows
+    double mean = 0;     ///< training mean of the score in the study's metric
+    double sd = 1;       ///< its training standard deviation
+    bool active = true;  ///< false for the first present level of a category and for levels without training rows
 };
 
 /// One equation on its training rows, in the study's metric.
 struct EquationFit {
-    std::vector<int> active;      ///< design columns in force, by position in EquationPlan::columns
-    CrossProducts sums;           ///< over the active columns
+    std::vector<int> active;  ///< design columns in force, by position in EquationPlan::columns
+    CrossProducts sums;       ///< over the active columns
     LeastSquares solution;
-    Eigen::VectorXd slopes;       ///< per design column of the plan, 0 for inactive ones
+    Eigen::VectorXd slopes;  ///< per design column of the plan, 0 for inactive ones
     double intercept = 0;
 };
 
 struct Fit {
     FitStatus status = FitStatus::not_run;
-    std::string reason;                    ///< why it failed, in words, without the fold
-    int rounds = 0;                        ///< of the weighting iteration; 0 if none was needed
-    bool rank_deficient = false;           ///< some needed equation was solved by the minimum-norm solution
-    bool unseen_level = false;             ///< some level of a used category had no training row
-    std::vector<Eigen::VectorXd> weights;  ///< per block, on standardised indicators, score standard deviation 1
-    std::vector<Eigen::VectorXd> loadings; ///< per block, training correlation of indicator and own score
-    std::vector<ScoreMap> scores;          ///< per block
-    Eigen::MatrixXd score_correlations;    ///< blocks x blocks
-    std::vector<EquationFit> equations;    ///< per equation of the plan
+    std::string reason;                     ///< why it failed, in words, without the fold
+    int rounds = 0;                         ///< of the weighting iteration; 0 if none was needed
+    bool rank_deficient = false;            ///< some needed equation was solved by the minimum-norm solution
+    bool unseen_level = false;              ///< some level of a used category had no training row
+    std::vector<Eigen::VectorXd> weights;   ///< per block, on standardised indicators, score standard deviation 1
+    std::vector<Eigen::VectorXd> loadings;  ///< per block, training correlation of indicator and own score
+    std::vector<ScoreMap> scores;           ///< per block
+    Eigen::MatrixXd score_correlations;     ///< blocks x blocks
+    std::vector<EquationFit> equations;     ///< per equation of the plan
 
-    Eigen::VectorXd gap_means;             ///< per sample column, what fills a gap: the training mean in centred units
+    Eigen::VectorXd gap_means;  ///< per sample column, what fills a gap: the training mean in centred units
     // Predicted indicator j = offset_j + factor_j x predicted target score in standard units.
     Eigen::VectorXd offset;
     Eigen::VectorXd factor;

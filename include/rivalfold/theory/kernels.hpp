@@ -14,7 +14,8 @@ inline constexpr std::ptrdiff_t padded(std::ptrdiff_t rows) { return (rows + kLa
 
 /// Adds X'X of a rows x m column-major block (columns `stride` apart) to the lower triangle of `gram` (m x m, columns
 /// `gram_stride` apart). rows must be a multiple of kLanes.
-void add_gram(const double* x, std::ptrdiff_t stride, std::ptrdiff_t rows, std::ptrdiff_t m, double* gram, std::ptrdiff_t gram_stride);
+void add_gram(const double* x, std::ptrdiff_t stride, std::ptrdiff_t rows, std::ptrdiff_t m, double* gram,
+              std::ptrdiff_t gram_stride);
 
 /// out[i] = value
 void fill(double* out, std::ptrdiff_t n, double value);
@@ -33,7 +34,7 @@ void keep_larger(double* out, const double* x, std::ptrdiff_t n);
 struct ErrorSums {
     double squared = 0, absolute = 0, proportional = 0;
 };
-void add_errors(const double* actual, const double* predicted, const double* inverse_actual, std::ptrdiff_t n, double one_over_unit,
-                double* row_squared, double* row_absolute, ErrorSums& sums);
+void add_errors(const double* actual, const double* predicted, const double* inverse_actual, std::ptrdiff_t n,
+                double one_over_unit, double* row_squared, double* row_absolute, ErrorSums& sums);
 
 }  // namespace rivalfold

@@ -15,13 +15,15 @@ struct CrossProducts {
     Eigen::MatrixXd xx;      ///< c x c, about the means
     Eigen::MatrixXd xy;      ///< c x q, about the means
     Eigen::VectorXd yy;      ///< q, about the means
-    Eigen::VectorXd scale;   ///< c; a column varies if xx(j, j) > 1e-14 scale(j); its sum of squares about some nearby origin
+    Eigen::VectorXd
+        scale;  ///< c; a column varies if xx(j, j) > 1e-14 scale(j); its sum of squares about some nearby origin
 };
 
 /// Solves min |y - a - X b| for each outcome. Columns scaled to unit length, Cholesky with diagonal pivoting; a pivot
-/// below 1e-11 ends the rank (Higham 2002, Accuracy and Stability of Numerical Algorithms, 2nd ed., ch. 10). A rank-deficient design gets
-/// the solution of smallest norm of [1, X] (Moore-Penrose), found by removing the null-space part from a basic one.
-/// Accuracy: about 1e-16 / smallest pivot, relative. No allocation after the first call with the same sizes, full rank.
+/// below 1e-11 ends the rank (Higham 2002, Accuracy and Stability of Numerical Algorithms, 2nd ed., ch. 10). A
+/// rank-deficient design gets the solution of smallest norm of [1, X] (Moore-Penrose), found by removing the null-space
+/// part from a basic one. Accuracy: about 1e-16 / smallest pivot, relative. No allocation after the first call with the
+/// same sizes, full rank.
 class LeastSquares {
 public:
     void solve(const CrossProducts& sums);
@@ -42,8 +44,8 @@ private:
     void remove_null_space(const CrossProducts& sums);
     void solve_factored(double* scaled) const;
 
-    Eigen::MatrixXd factor_;         // lower triangle in pivot order
-    Eigen::VectorXd unit_;           // 1 / length of each column, 0 if it does not vary
+    Eigen::MatrixXd factor_;           // lower triangle in pivot order
+    Eigen::VectorXd unit_;             // 1 / length of each column, 0 if it does not vary
     std::vector<Eigen::Index> order_;  // pivot order
     Eigen::VectorXd work_;
     Eigen::VectorXd intercept_;

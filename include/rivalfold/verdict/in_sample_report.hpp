@@ -10,7 +10,8 @@ namespace rivalfold {
 struct TermReport {
     std::string term;  ///< "1" is the intercept
     double coefficient = 0, se = 0, t = 0, p = 0;
-    double f2 = 0;     ///< (R2 - R2 without the term) / (1 - R2) (Cohen 1988, Statistical Power Analysis, 2nd ed.); NaN for the intercept
+    double f2 = 0;  ///< (R2 - R2 without the term) / (1 - R2) (Cohen 1988, Statistical Power Analysis, 2nd ed.); NaN
+                    ///< for the intercept
     std::string reason;
 };
 
@@ -41,8 +42,8 @@ struct InSample {
 };
 
 /// Of the target's equation fitted to all rows used, target score in standard units. p coefficients with the intercept.
-/// AIC = n ln(SSE/n) + 2p (Akaike 1974); AICc = AIC + 2p(p+1)/(n-p-1) (Hurvich & Tsai 1989); BIC = n ln(SSE/n) + p ln n (Schwarz 1978);
-/// HQ = n ln(SSE/n) + 2p ln ln n (Hannan & Quinn 1979); GM = SSE/MSE_F + p ln n (Geweke & Meese 1981).
+/// AIC = n ln(SSE/n) + 2p (Akaike 1974); AICc = AIC + 2p(p+1)/(n-p-1) (Hurvich & Tsai 1989); BIC = n ln(SSE/n) + p ln n
+/// (Schwarz 1978); HQ = n ln(SSE/n) + 2p ln ln n (Hannan & Quinn 1979); GM = SSE/MSE_F + p ln n (Geweke & Meese 1981).
 struct Criteria {
     double aic = 0, aicc = 0, bic = 0, hq = 0, gm = 0, bic_weight = 0;
     std::string reason;  ///< why some are NaN

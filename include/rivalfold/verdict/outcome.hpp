@@ -24,8 +24,8 @@ struct Reliability {
 
 struct RunRecord {
     std::string version;
-    std::string started;       ///< UTC, ISO 8601
-    double seconds = 0;        ///< reading to verdict
+    std::string started;  ///< UTC, ISO 8601
+    double seconds = 0;   ///< reading to verdict
     unsigned threads = 0;
     std::string study_sha256;  ///< of the study file
 };
@@ -40,8 +40,8 @@ struct Outcome {
     Verdict verdict;
     CompletenessReport completeness;  ///< computed only with verdict: completeness
     std::vector<std::string> advice;
-    std::string segment_name;        ///< empty for the whole sample
-    std::vector<Outcome> segments;   ///< the contest within each segment; empty without `segment`
+    std::string segment_name;       ///< empty for the whole sample
+    std::vector<Outcome> segments;  ///< the contest within each segment; empty without `segment`
     std::vector<Reversal> reversals;
     RunRecord run;
 };

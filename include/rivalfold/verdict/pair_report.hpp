@@ -23,14 +23,15 @@ struct PairReport {
     double difference = 0;     ///< D = mean of L(a, i) - L(b, i)
     double relative = 0;       ///< D / loss(b)
     PairedTest rows, corrected;
-    double p = 0, p_holm = 0;  ///< the larger of the two tests' p, and its Holm adjustment over the pairs of theories
-    double low = 0, high = 0;  ///< the wider of the two intervals
-    bool theories = false;     ///< both are theories
-    double monte_carlo_se = 0; ///< of the difference, from the spread of the repeats; NaN with one repeat
+    double p = 0, p_holm = 0;   ///< the larger of the two tests' p, and its Holm adjustment over the pairs of theories
+    double low = 0, high = 0;   ///< the wider of the two intervals
+    bool theories = false;      ///< both are theories
+    double monte_carlo_se = 0;  ///< of the difference, from the spread of the repeats; NaN with one repeat
     // Theories only:
-    OneSidedTest a_knows_more, b_knows_more;  ///< encompassing: does the first (the second) hold something that the other lacks?
-    std::optional<std::size_t> inner;         ///< the contestant whose target equation is nested in the other's
-    OneSidedTest extra_terms;                 ///< Clark-West, if nested: do the outer theory's extra terms carry information?
+    OneSidedTest a_knows_more,
+        b_knows_more;  ///< encompassing: does the first (the second) hold something that the other lacks?
+    std::optional<std::size_t> inner;  ///< the contestant whose target equation is nested in the other's
+    OneSidedTest extra_terms;          ///< Clark-West, if nested: do the outer theory's extra terms carry information?
     std::string nested_words;
     PairOutcome outcome = PairOutcome::unresolved;
 };

@@ -127,8 +127,10 @@ results.json (schema 1)
                      best-ranked theory; rows, corrected: the two tests;
                      complementary: better by both and by more than `margin`;
                      words
-   disagreement      null where stack is; first, second: the two best-ranked;
-                     thirds: along (an antecedent, or their spread), third (1
+   disagreement      where the two best-ranked theories part (a reason where
+                     they make the same predictions): first, second, their
+                     names; thirds: along (an antecedent, or their spread),
+                     third (1
                      lowest .. 3 highest), from, to (standard units), rows,
                      difference (loss of first minus loss of second), se
    completeness      with verdict: {completeness: true}: rows (of the

@@ -1,4 +1,5 @@
-// The kinds of term that an equation may hold, one file each: the members' scores of some rows in, the term's values out.
+// The kinds of term that an equation may hold, one file each: the members' scores of some rows in, the term's values
+// out.
 #pragma once
 
 #include "rivalfold/study/study.hpp"

@@ -6,7 +6,8 @@
 
 namespace rivalfold {
 
-void first_weights(Weights weights, const Eigen::Ref<const Eigen::MatrixXd>& correlations, Eigen::Ref<Eigen::VectorXd> out) {
+void first_weights(Weights weights, const Eigen::Ref<const Eigen::MatrixXd>& correlations,
+                   Eigen::Ref<Eigen::VectorXd> out) {
     if (weights != Weights::principal || correlations.rows() == 1) {
         out.setOnes();
         return;

@@ -2,6 +2,8 @@
 
 namespace rivalfold {
 
-void update_mode_a(const Eigen::Ref<const Eigen::VectorXd>& covariances, Eigen::Ref<Eigen::VectorXd> out) { out = covariances; }
+void update_mode_a(const Eigen::Ref<const Eigen::VectorXd>& covariances, Eigen::Ref<Eigen::VectorXd> out) {
+    out = covariances;
+}
 
 }  // namespace rivalfold

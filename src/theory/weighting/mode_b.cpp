@@ -2,8 +2,8 @@
 
 namespace rivalfold {
 
-bool update_mode_b(const Eigen::LLT<Eigen::MatrixXd>& correlations, const Eigen::Ref<const Eigen::VectorXd>& covariances,
-                   Eigen::Ref<Eigen::VectorXd> out) {
+bool update_mode_b(const Eigen::LLT<Eigen::MatrixXd>& correlations,
+                   const Eigen::Ref<const Eigen::VectorXd>& covariances, Eigen::Ref<Eigen::VectorXd> out) {
     out = covariances;
     correlations.matrixL().solveInPlace(out);
     correlations.matrixU().solveInPlace(out);

@@ -20,7 +20,8 @@ PathStage::PathStage(const Blueprint& blueprint) : plan_(blueprint) {
     }
     successors_.resize(plan_.blocks.size());
     for (const EquationPlan& equation : plan_.equations)
-        for (const int block : equation.predecessors) successors_[static_cast<std::size_t>(block)].push_back(equation.outcome);
+        for (const int block : equation.predecessors)
+            successors_[static_cast<std::size_t>(block)].push_back(equation.outcome);
     const auto stacked = static_cast<Eigen::Index>(stacked_.size());
     const auto blocks = static_cast<Eigen::Index>(plan_.blocks.size());
     correlations_.resize(stacked, stacked);
@@ -35,7 +36,8 @@ void PathStage::run(const Moments& moments, Fit& fit) {
     if (!start(fit)) return;
     correlate(fit);
     fit.rounds = 0;
-    const bool iterate = std::any_of(plan_.blocks.begin(), plan_.blocks.end(), [](const Block& block) { return block.iterates(); });
+    const bool iterate =
+        std::any_of(plan_.blocks.begin(), plan_.blocks.end(), [](const Block& block) { return block.iterates(); });
     while (iterate) {
         find_proxies(fit);
         const double moved = renew(fit);
@@ -44,7 +46,8 @@ void PathStage::run(const Moments& moments, Fit& fit) {
         ++fit.rounds;
         if (moved < kSettled) break;
         if (fit.rounds == kMostRounds)
-            return fit.fail(fmt::format("the indicator weights did not settle within {} rounds (last change {:.1e})", kMostRounds, moved));
+            return fit.fail(fmt::format("the indicator weights did not settle within {} rounds (last change {:.1e})",
+                                        kMostRounds, moved));
     }
     settle_signs(fit);
 }
@@ -54,7 +57,8 @@ void PathStage::gather(const Moments& moments, Fit& fit) {
     fit.scores.resize(plan_.blocks.size());
     for (std::size_t b = 0; b < plan_.blocks.size(); ++b) {
         const Block& block = plan_.blocks[b];
-        fit.scores[b].active = !block.is_level() || moments.in_force[static_cast<std::size_t>(block.columns.front())] != 0;
+        fit.scores[b].active =
+            !block.is_level() || moments.in_force[static_cast<std::size_t>(block.columns.front())] != 0;
         if (block.is_level() && !(moments.mean(block.columns.front()) > 0)) fit.unseen_level = true;
     }
     const double divisor = moments.n - 1;
@@ -79,15 +83,19 @@ bool PathStage::start(Fit& fit) {
         const auto inside = correlations_.block(span.first, span.first, span.size, span.size);
         first_weights(block.weights, inside, fit.weights[b]);
         if (!rescale_to_unit_score(inside, fit.weights[b])) {
-            fit.fail(fmt::format("the indicators of \"{}\" cancel each other: their equally weighted sum does not vary; reverse the "
-                                 "negatively keyed ones", block.construct));
+            fit.fail(fmt::format(
+                "the indicators of \"{}\" cancel each other: their equally weighted sum does not vary; reverse the "
+                "negatively keyed ones",
+                block.construct));
             return false;
         }
         if (block.weights != Weights::mode_b) continue;
         factors_[b].compute(inside);
         if (factors_[b].info() != Eigen::Success || factors_[b].rcond() < 1e-13) {
-            fit.fail(fmt::format("weights: mode_b of \"{}\" needs indicators that are no linear combinations of each other; drop one or use mode_a",
-                                 block.construct));
+            fit.fail(
+                fmt::format("weights: mode_b of \"{}\" needs indicators that are no linear combinations of each other; "
+                            "drop one or use mode_a",
+                            block.construct));
             return false;
         }
     }
@@ -101,14 +109,15 @@ void PathStage::correlate(const Fit& fit) {
     }
     for (std::size_t b = 0; b < span_.size(); ++b)
         for (std::size_t a = 0; a < span_.size(); ++a)
-            among_scores_(static_cast<Eigen::Index>(a), static_cast<Eigen::Index>(b)) =
-                fit.weights[a].dot(with_scores_.col(static_cast<Eigen::Index>(b)).segment(span_[a].first, span_[a].size));
+            among_scores_(static_cast<Eigen::Index>(a), static_cast<Eigen::Index>(b)) = fit.weights[a].dot(
+                with_scores_.col(static_cast<Eigen::Index>(b)).segment(span_[a].first, span_[a].size));
 }
 
 void PathStage::find_proxies(const Fit& fit) {
     proxies_.setZero();
     for (std::size_t b = 0; b < plan_.blocks.size(); ++b)
-        for (const int successor : successors_[b]) proxies_(successor, static_cast<Eigen::Index>(b)) += among_scores_(successor, static_cast<Eigen::Index>(b));
+        for (const int successor : successors_[b])
+            proxies_(successor, static_cast<Eigen::Index>(b)) += among_scores_(successor, static_cast<Eigen::Index>(b));
     for (const EquationPlan& equation : plan_.equations) {
         if (!plan_.blocks[static_cast<std::size_t>(equation.outcome)].iterates()) continue;
         Eigen::Index c = 0;
@@ -130,7 +139,8 @@ void PathStage::find_proxies(const Fit& fit) {
         regression_.solve(sums_);
         row = 0;
         for (const int a : equation.predecessors)
-            if (fit.scores[static_cast<std::size_t>(a)].active) proxies_(a, equation.outcome) += regression_.slopes()(row++, 0);
+            if (fit.scores[static_cast<std::size_t>(a)].active)
+                proxies_(a, equation.outcome) += regression_.slopes()(row++, 0);
     }
 }
 
@@ -140,7 +150,8 @@ double PathStage::renew(Fit& fit) {
         const Block& block = plan_.blocks[b];
         if (!block.iterates()) continue;
         const Span& span = span_[b];
-        covariances_.noalias() = with_scores_.middleRows(span.first, span.size) * proxies_.col(static_cast<Eigen::Index>(b));
+        covariances_.noalias() =
+            with_scores_.middleRows(span.first, span.size) * proxies_.col(static_cast<Eigen::Index>(b));
         renewed_.resize(span.size);
         bool good = true;
         if (block.weights == Weights::mode_a)
@@ -149,11 +160,14 @@ double PathStage::renew(Fit& fit) {
             good = update_mode_b(factors_[b], covariances_, renewed_);
         const auto inside = correlations_.block(span.first, span.first, span.size, span.size);
         if (!good || !rescale_to_unit_score(inside, renewed_)) {
-            fit.fail(fmt::format("\"{}\" is uncorrelated with everything it is connected to, so its indicators have no {} weights; use weights: equal",
-                                 block.construct, word(block.weights)));
+            fit.fail(
+                fmt::format("\"{}\" is uncorrelated with everything it is connected to, so its indicators have no {} "
+                            "weights; use weights: equal",
+                            block.construct, word(block.weights)));
             return 0;
         }
-        for (Eigen::Index h = 0; h < span.size; ++h) moved = std::max(moved, std::fabs(renewed_(h) - fit.weights[b](h)));
+        for (Eigen::Index h = 0; h < span.size; ++h)
+            moved = std::max(moved, std::fabs(renewed_(h) - fit.weights[b](h)));
         fit.weights[b] = renewed_;
     }
     return moved;
