@@ -159,6 +159,7 @@ std::vector<Cell> all_cells() {
     };
     add(symmetric(two_theories("exchangeable", {0.4, 0.4}, {"x1", "x2"})), every, sizes);
     add(symmetric(two_theories("overlapping", {0.4, 0.3, 0.3}, {"x1, x2", "x1, x3"})), every, sizes);
+    add(symmetric(two_theories("overlapping, weak own terms", {0.5, 0.3, 0.05, 0.05}, {"x1, x2, x3", "x1, x2, x4"})), bounded, sizes);
     add(tuned_to(two_theories("nested, one weak term", {0.5, 0.3, 0}, {"x1, x2", "x1, x2, x3"}), Tuned::extra_effects,
                  2),
         every, sizes);

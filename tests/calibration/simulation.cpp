@@ -165,33 +165,65 @@ ExpectedLosses simulate_losses(const Cell& cell, std::uint64_t seed, Part part, 
     return out;
 }
 
-double tune_in(const Cell& cell, std::uint64_t seed, std::size_t training_sets, unsigned threads) {
-    Cell trial = cell;
-    double tolerance = 0;
-    const auto excess = [&](double square) {
-        trial.design = with_tuned(cell.design, std::sqrt(square));
-        const ExpectedLosses losses = simulate_losses(trial, seed, Part::tuning, training_sets, threads);
+/// (L2 - L1) - wanted x min(L1, L2) at a square of the tuned number, always with the same random numbers.
+struct Excess {
+    const Cell& cell;
+    std::uint64_t seed;
+    std::size_t training_sets;
+    unsigned threads;
+    double tolerance = 0;  ///< a twentieth of its Monte Carlo error
+
+    double at(double square) {
+        Cell tuned = cell;
+        tuned.design = with_tuned(cell.design, std::sqrt(square));
+        const ExpectedLosses losses = simulate_losses(tuned, seed, Part::tuning, training_sets, threads);
         tolerance = 0.05 * losses.difference_se[0];
         return -losses.difference[0] - cell.design.wanted * std::min(losses.loss[0], losses.loss[1]);
-    };
+    }
+};
+
+/// A root and the slope there.
+struct Root {
+    double square = 0, slope = 0;
+};
+
+Root find_coarse(const Cell& cell, Excess excess) {
     double low = 0, high = cell.design.tuned == Tuned::extra_effects ? 0.06 : 0.16;
     if (cell.design.tuned == Tuned::correlation) low = 0.64, high = 0.998;
-    double at_low = excess(low), at_high = excess(high);
-    if (!(at_low > 0 && at_high < 0))
-        throw std::runtime_error(cell.name() + ": the tuned number lies outside its range");
-    double root = low;
+    double at_low = excess.at(low), at_high = excess.at(high);
+    if (!(at_low > 0 && at_high < 0)) throw std::runtime_error(cell.name() + ": the tuned number lies outside its range");
+    Root root{low, (at_high - at_low) / (high - low)};
+    double before = low, value_before = at_low;
     int side = 0;
     for (int step = 0; step < 25; ++step) {
-        root = (low * at_high - high * at_low) / (at_high - at_low);
-        const double value = excess(root);
-        if (std::fabs(value) <= tolerance) break;
+        root.square = (low * at_high - high * at_low) / (at_high - at_low);
+        const double value = excess.at(root.square);
+        root.slope = (value - value_before) / (root.square - before);
+        before = root.square;
+        value_before = value;
+        if (std::fabs(value) <= excess.tolerance) break;
         const int now = value > 0 ? 1 : -1;
-        (now > 0 ? low : high) = root;
+        (now > 0 ? low : high) = root.square;
         (now > 0 ? at_low : at_high) = value;
         if (now == side) (now > 0 ? at_high : at_low) /= 2;
         side = now;
     }
-    return std::sqrt(root);
+    return root;
+}
+
+double tune_in(const Cell& cell, std::uint64_t seed, std::size_t training_sets, unsigned threads) {
+    Root root = find_coarse(cell, {cell, seed, training_sets / 6, threads});
+    Excess fine{cell, seed, training_sets, threads};
+    double before = 0, value_before = 0;
+    for (int step = 0; step < 8; ++step) {
+        const double value = fine.at(root.square);
+        if (std::fabs(value) <= fine.tolerance) break;
+        if (step > 0 && root.square != before) root.slope = (value - value_before) / (root.square - before);
+        before = root.square;
+        value_before = value;
+        root.square = std::max(0.0, root.square - value / root.slope);
+    }
+    return std::sqrt(root.square);
 }
 
 }  // namespace
@@ -232,9 +264,11 @@ CellResult run_cell(const Cell& cell, std::uint64_t seed, std::uint32_t samples,
     }
     result.best = cell.design.best;
     const std::size_t n_theories = cell.design.theories.size();
-    if (cell.design.symmetric && result.best.size() == n_theories) {
-        result.truth.difference.assign(n_theories * (n_theories - 1) / 2, 0);
-        result.truth.difference_se = result.truth.difference;
+    if (cell.design.symmetric) {
+        const auto tied = [&](std::size_t theory) { return std::find(result.best.begin(), result.best.end(), theory) != result.best.end(); };
+        for (std::size_t a = 0; a < n_theories; ++a)
+            for (std::size_t b = a + 1; b < n_theories; ++b) result.truth.difference.push_back(tied(a) && tied(b) ? 0 : kNaN);
+        result.truth.difference_se.assign(result.truth.difference.size(), 0);
     } else {
         result.truth = simulate_losses(result.cell, seed, Part::truth, training_sets, threads);
     }

@@ -72,6 +72,6 @@ struct CellResult {
 /// Tunes, simulates the truth, and judges `samples` samples, in `threads` threads; their number changes nothing but the
 /// time.
 CellResult run_cell(const Cell& cell, std::uint64_t seed, std::uint32_t samples, unsigned threads,
-                    std::size_t training_sets = 3000);
+                    std::size_t training_sets = 18000);
 
 }  // namespace rivalfold::calibration
