@@ -31,11 +31,7 @@ void LinearBenchmark::fit_moments(const Moments& moments, FitScratch&, Fit& fit)
     const auto unit = [&](int column) { return column < sample_.n_variables ? moments.sd(column) : 1.0; };
     CrossProducts& sums = out.sums;
     sums.n = moments.n;
-    sums.mean_x.resize(c);
-    sums.mean_y.resize(q);
-    sums.xx.resize(c, c);
-    sums.xy.resize(c, q);
-    sums.yy.resize(q);
+    sums.make_room(c, q);
     for (Eigen::Index a = 0; a < c; ++a) {
         const int column = out.active[static_cast<std::size_t>(a)];
         sums.mean_x(a) = column < sample_.n_variables ? 0 : moments.mean(column);

@@ -12,6 +12,7 @@ namespace rivalfold {
 namespace {
 
 constexpr std::size_t kMostColumns = 500;
+constexpr std::size_t kCountedColumns = 1'000'000'000;
 
 /// Text that two constructs share exactly if they are measured alike: the same variables, weighted alike.
 std::string measurement_key(const Measurement& measurement) {
@@ -101,13 +102,14 @@ private:
     /// One column per combination of the members' blocks, the last member's level running fastest.
     void add_columns(const Term& term, int number, EquationPlan& equation) {
         std::size_t count = 1;
+        // A product takes any number of names: without the cap 13 categories of 32 levels would come round to 0.
         for (const Name& member : term.members)
-            count *= blocks_of(member.text).size();  // at most 50^8, far below overflow
+            count = std::min(count * blocks_of(member.text).size(), kCountedColumns);
         if (count > kMostColumns)
             throw FaultError(study_.fault_at(
                 term.place,
-                fmt::format("{} makes {} columns, one for each combination of levels; at most {} are possible",
-                            describe(term), count, kMostColumns),
+                fmt::format("{} makes {}{} columns, one for each combination of levels; at most {} are possible",
+                            describe(term), count == kCountedColumns ? "at least " : "", count, kMostColumns),
                 "merge levels, or leave out a category"));
         std::vector<std::vector<int>> combinations(1);
         for (const Name& member : term.members) {

@@ -12,6 +12,15 @@ constexpr double kSmallestPivot = 1e-11;
 constexpr double kVaries = 1e-14;
 }  // namespace
 
+void CrossProducts::make_room(Eigen::Index c, Eigen::Index q) {
+    mean_x.resize(c);
+    mean_y.resize(q);
+    xx.resize(c, c);
+    xy.resize(c, q);
+    yy.resize(q);
+    scale.resize(c);
+}
+
 void LeastSquares::factorise(const CrossProducts& sums) {
     const Eigen::Index c = sums.xx.rows();
     unit_.resize(c);

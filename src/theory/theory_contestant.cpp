@@ -151,11 +151,7 @@ void TheoryContestant::solve_linear(std::size_t equation, double n, Fit& fit) co
     const auto c = static_cast<Eigen::Index>(out.active.size());
     CrossProducts& sums = out.sums;
     sums.n = n;
-    sums.mean_x.resize(c);
-    sums.mean_y.resize(1);
-    sums.xx.resize(c, c);
-    sums.xy.resize(c, 1);
-    sums.yy.resize(1);
+    sums.make_room(c, 1);
     const auto block_of = [&](Eigen::Index a) {
         return plan.columns[static_cast<std::size_t>(out.active[static_cast<std::size_t>(a)])].blocks.front();
     };
@@ -182,12 +178,7 @@ void TheoryContestant::fit_design(int design, const Eigen::MatrixXd& gram, Fit& 
     const auto c = static_cast<Eigen::Index>(out.active.size());
     CrossProducts& sums = out.sums;
     sums.n = n;
-    sums.mean_x.resize(c);
-    sums.mean_y.resize(1);
-    sums.xx.resize(c, c);
-    sums.xy.resize(c, 1);
-    sums.yy.resize(1);
-    sums.scale.resize(c);
+    sums.make_room(c, 1);
     const double mean_y = gram(all + 1, all) / n;
     for (Eigen::Index a = 0; a < c; ++a) {
         const Eigen::Index i = out.active[static_cast<std::size_t>(a)];

@@ -15,8 +15,11 @@ struct CrossProducts {
     Eigen::MatrixXd xx;      ///< c x c, about the means
     Eigen::MatrixXd xy;      ///< c x q, about the means
     Eigen::VectorXd yy;      ///< q, about the means
-    Eigen::VectorXd
-        scale;  ///< c; a column varies if xx(j, j) > 1e-14 scale(j); its sum of squares about some nearby origin
+    /// c: each column's sum of squares about some nearby origin; it varies if xx(j, j) > 1e-14 scale(j)
+    Eigen::VectorXd scale;
+
+    /// Room for c columns and q outcomes; allocates only when the sizes change.
+    void make_room(Eigen::Index c, Eigen::Index q);
 };
 
 /// Solves min |y - a - X b| for each outcome. Columns scaled to unit length, Cholesky with diagonal pivoting; a pivot
