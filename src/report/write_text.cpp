@@ -194,7 +194,7 @@ std::string segments_table(const Outcome& outcome, const TerminalStyle& style) {
         out += wrap(fmt::format("{}: {}", plain(segment.segment_name), plain(segment.verdict.headline)),
                     static_cast<std::size_t>(style.width), 2) +
                "\n";
-    double smallest = 1;
+    double smallest = std::numeric_limits<double>::infinity();
     bool found = false;
     for (const Reversal& reversal : outcome.reversals) {
         if (!reversal.words.empty())
@@ -202,7 +202,7 @@ std::string segments_table(const Outcome& outcome, const TerminalStyle& style) {
         found = found || !reversal.words.empty();
         if (std::isfinite(reversal.p_holm)) smallest = std::min(smallest, reversal.p_holm);
     }
-    if (!found)
+    if (!found && std::isfinite(smallest))
         out += paragraph(fmt::format("No pair's loss difference differs between segments (smallest Holm-adjusted p "
                                      "{}); that is no proof of sameness.",
                                      p_text(smallest)),

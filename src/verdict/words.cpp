@@ -39,11 +39,12 @@ std::string size_words(const Study& study, const Trial& trial, const PairReport&
     const ContestantLosses& first = trial.contestants[pair.a];
     const ContestantLosses& second = trial.contestants[pair.b];
     if (std::max(first.loss, second.loss) <= 1e-12 * trial.loss_scale()) return "both predict every row exactly";
+    const auto smaller = [](double share) { return std::fabs(share) < 0.0005 ? 0.0 : -100 * share; };  // never -0.0
     return fmt::format(
         "its loss is {:.1f}% smaller than that of \"{}\" ({:.4g}% interval {:.1f} to {:.1f}%), a typical error of "
         "{:.3f} instead of {:.3f} in the units of {}",
-        -100 * pair.relative, second.name, 100 * (1 - study.verdict.level), -100 * pair.high / second.loss,
-        -100 * pair.low / second.loss, typical_error(first), typical_error(second),
+        smaller(pair.relative), second.name, 100 * (1 - study.verdict.level), smaller(pair.high / second.loss),
+        smaller(pair.low / second.loss), typical_error(first), typical_error(second),
         first.indicators.size() == 1 ? fmt::format("\"{}\"", first.indicators.front().name)
                                      : "the target's indicators");
 }
@@ -54,8 +55,8 @@ std::string failed_words(const Trial& trial) {
     for (std::size_t t = 0; t < trial.theories.size(); ++t)
         if (trial.contestants[t].failed) failed.push_back(t);
     return failed.empty() ? ""
-                          : fmt::format(" Not judged, because it could not be fitted in every split: {}.",
-                                        list_names(trial, failed));
+                          : fmt::format(" Not judged, because {} could not be fitted in every split: {}.",
+                                        failed.size() > 1 ? "they" : "it", list_names(trial, failed));
 }
 
 std::string winner_words(const Study& study, const Trial& trial, const Verdict& verdict,
